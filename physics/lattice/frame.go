@@ -38,7 +38,7 @@ func ParseFrame(s string) (Frame, error) {
 		return Conventional, nil
 	case "2pi/a", "2π/a":
 		return TwoPiOverA, nil
-	case "1/Å", "1/A", "1/Å":
+	case "1/Å", "1/A", "1/\u212b":
 		return InverseAngstrom, nil
 	}
 	return 0, fmt.Errorf("unknown frame %q: use primitive, conventional, 2pi/a or 1/Å", s)
