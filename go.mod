@@ -11,3 +11,5 @@ require (
 	gonum.org/v1/gonum v0.17.0
 	pgregory.net/rapid v1.2.0
 )
+
+require github.com/spf13/pflag v1.0.10
