@@ -8,6 +8,7 @@ require (
 	github.com/go-gl/mathgl v1.2.0
 	github.com/google/go-cmp v0.7.0
 	golang.org/x/image v0.30.0
+	golang.org/x/sys v0.30.0
 	gonum.org/v1/gonum v0.17.0
 	pgregory.net/rapid v1.2.0
 )

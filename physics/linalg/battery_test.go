@@ -359,7 +359,21 @@ func btoi(b bool) int {
 	return 0
 }
 
+// kernelChoices are the values of Solver.assembly that this machine can run.
+func kernelChoices() []bool {
+	if haveAVX2 {
+		return []bool{false, true}
+	}
+	return []bool{false}
+}
+
 func TestBatteries(t *testing.T) {
+	for _, assembly := range kernelChoices() {
+		t.Run(fmt.Sprintf("assembly=%t", assembly), func(t *testing.T) { testBatteries(t, assembly) })
+	}
+}
+
+func testBatteries(t *testing.T, assembly bool) {
 	for _, b := range batteries {
 		t.Run(b.name, func(t *testing.T) {
 			r := rand.New(rand.NewPCG(1, 2))
@@ -371,6 +385,7 @@ func TestBatteries(t *testing.T) {
 				before := NewMatrix(n)
 				before.Copy(a)
 				solver, v := NewSolver(n), NewMatrix(n)
+				solver.assembly = assembly
 				e, only := make([]float64, n), make([]float64, n)
 				if err := solver.Vectors(e, v, a); err != nil {
 					t.Fatalf("n = %d: %v", n, err)

@@ -1,9 +1,11 @@
 package linalg
 
-// This file holds the four loops in which a solve spends its time. They work
-// on slices of equal length, so that the compiler needs no bounds checks, and
-// on two rows, two vectors or four columns at once, so that loaded numbers are
-// used more than once.
+// This file holds the four loops in which a solve spends its time, in plain
+// Go. They work on slices of equal length, so that the compiler needs no bounds
+// checks, and on two rows, two vectors or four columns at once, so that loaded
+// numbers are used more than once. Where the processor has AVX2, the kernels of
+// kernels_amd64.s do the same work; Solver.assembly chooses. They want full
+// rows, not the lower triangle, and vectors in columns.
 
 // hermitianTimes stores the conjugate of A u in q, where ū = (ur, ui) and A is
 // the leading block of a of the length of u, lower triangle:
@@ -105,43 +107,6 @@ func rotateRows(z []float64, stride, n, l, m, sweeps int, cosines, sines []float
 			row = up
 		}
 		row[0], row[1], row[2], row[3] = x0, x1, x2, x3
-	}
-}
-
-// backTransform turns the real vectors of the tridiagonal matrix, taken in
-// s.order, into those of the matrix itself, two at a time, and stores them in
-// the rows of v.
-func (s *Solver) backTransform(v *Matrix) {
-	n := s.n
-	i := 0
-	for ; i+1 < n; i += 2 {
-		xr, xi := v.row(i, n)
-		yr, yi := v.row(i+1, n)
-		copy(xr, s.z[s.order[i]*s.zStride:])
-		copy(yr, s.z[s.order[i+1]*s.zStride:])
-		clear(xi)
-		clear(yi)
-		xr[0], xi[0] = s.phaseR*xr[0], s.phaseI*xr[0]
-		yr[0], yi[0] = s.phaseR*yr[0], s.phaseI*yr[0]
-		for k := 2; k < n; k++ {
-			if s.tauR[k] == 0 && s.tauI[k] == 0 {
-				continue
-			}
-			ur, ui := s.work.row(k, k)
-			reflectTwo(ur, ui, s.tauR[k], s.tauI[k], xr[:k], xi[:k], yr[:k], yi[:k])
-		}
-	}
-	if i < n {
-		xr, xi := v.row(i, n)
-		copy(xr, s.z[s.order[i]*s.zStride:])
-		clear(xi)
-		if n > 1 {
-			xr[0], xi[0] = s.phaseR*xr[0], s.phaseI*xr[0]
-		}
-		for k := 2; k < n; k++ {
-			ur, ui := s.work.row(k, k)
-			reflectOne(ur, ui, s.tauR[k], s.tauI[k], xr[:k], xi[:k])
-		}
 	}
 }
 

@@ -69,16 +69,17 @@ func (s *Solver) diagonalise(vectors bool) error {
 			}
 			topSign = s.sweep(l, m, topSign)
 			if vectors {
-				rotateRows(s.z, s.zStride, n, l, m, sweeps, s.cos, s.sin)
+				s.takeRoots(l, m)
+				s.rotate(l, m, sweeps)
 			}
 		}
 	}
 	return nil
 }
 
-// sweep does one QL sweep on rows l … m and leaves the cosine and sine of the
-// rotation of rows i, i+1 in s.cos[i], s.sin[i]. It takes and returns the sign
-// bit of the topmost off-diagonal.
+// sweep does one QL sweep on rows l … m and leaves the squared cosine and sine
+// of the rotation of rows i, i+1, with their signs, in s.cos[i], s.sin[i]. It
+// takes and returns the sign bit of the topmost off-diagonal.
 func (s *Solver) sweep(l, m int, topSign uint64) uint64 {
 	d, e2 := s.d[:m+1], s.e2[:m+1]
 	cosines, sines := s.cos[:m+1], s.sin[:m+1]
@@ -105,8 +106,8 @@ func (s *Solver) sweep(l, m int, topSign uint64) uint64 {
 		d[i+1] = gamma + (a - next)
 		oldCos2 := cos2
 		cos2, sin2 = p*inverse, b*inverse
-		cosines[i] = math.Float64frombits(math.Float64bits(math.Sqrt(cos2)) | sign)
-		sines[i] = math.Sqrt(sin2)
+		cosines[i] = math.Float64frombits(math.Float64bits(cos2) | sign)
+		sines[i] = sin2
 		if p > zeroCosine {
 			p = next * (numerator / p)
 			before, sign = sign, sign^math.Float64bits(next)&signBit
@@ -120,6 +121,20 @@ func (s *Solver) sweep(l, m int, topSign uint64) uint64 {
 	d[l] = gamma + shift
 	sines[l] = math.Float64frombits(math.Float64bits(sines[l]) | topSign)
 	return topSign ^ sign
+}
+
+// takeRoots turns the signed squares that sweep left into cosines and sines.
+// It is apart from the sweep, whose divisions would wait for the roots.
+func (s *Solver) takeRoots(l, m int) {
+	if s.assembly {
+		rootsAVX2(&s.cos[l], &s.sin[l], m-l)
+		return
+	}
+	c, sn := s.cos[l:m], s.sin[l:m]
+	for i, x := range c {
+		c[i] = math.Copysign(math.Sqrt(math.Abs(x)), x)
+		sn[i] = math.Copysign(math.Sqrt(math.Abs(sn[i])), sn[i])
+	}
 }
 
 // startVectors sets s.z to the diagonal of signs that makes all off-diagonals

@@ -19,14 +19,18 @@ type Solver struct {
 	zStride    int
 	cos, sin   []float64 // rotations of one sweep
 	order      []int
+	columns    *Matrix // the vectors in columns, for the assembly kernels
+	assembly   bool    // use the kernels of kernels_amd64.s
 }
 
 // NewSolver returns a solver for n×n matrices, n ≥ 0.
 func NewSolver(n int) *Solver {
-	floats := make([]float64, 9*n)
+	// The kernels work on four numbers at a time and may touch the padding.
+	padded := n + 4
+	floats := make([]float64, 9*padded)
 	take := func() []float64 {
-		part := floats[:n:n]
-		floats = floats[n:]
+		part := floats[:n:padded]
+		floats = floats[padded:]
 		return part
 	}
 	stride := paddedStride(n)
@@ -35,6 +39,7 @@ func NewSolver(n int) *Solver {
 		qr: take(), qi: take(), tauR: take(), tauI: take(),
 		e: take(), e2: take(), d: take(), cos: take(), sin: take(),
 		z: make([]float64, n*stride), zStride: stride, order: make([]int, n),
+		columns: NewMatrix(n), assembly: haveAVX2,
 	}
 }
 
@@ -94,8 +99,8 @@ const (
 	largestSquares  = 1e60
 )
 
-// load copies the lower triangle of a into the workspace, checks it, and
-// scales it if its size demands. It returns the factor that undoes the scaling
+// load copies the lower triangle of a into the workspace (both triangles, if
+// the assembly kernels are to work there), checks it, and scales it if its size demands. It returns the factor that undoes the scaling
 // (a power of two), 0 for the zero matrix.
 func (s *Solver) load(a *Matrix) (undo float64, err error) {
 	n, w := s.n, s.work
@@ -115,11 +120,16 @@ func (s *Solver) load(a *Matrix) (undo float64, err error) {
 	}
 	// A NaN or an infinity anywhere makes the sum fail this test too.
 	if sum := sumR + sumI + sumD; sum >= smallestSquares && sum <= largestSquares {
+		s.fillUpper()
 		return 1, nil
 	}
 	largest, err := largestElement("the matrix element", a)
-	if err != nil || largest == 0 {
+	if err != nil {
 		return 0, err
+	}
+	if largest == 0 {
+		s.fillUpper()
+		return 0, nil
 	}
 	_, exponent := math.Frexp(largest)
 	for i := range n {
@@ -129,9 +139,26 @@ func (s *Solver) load(a *Matrix) (undo float64, err error) {
 			wi[j] = math.Ldexp(wi[j], -exponent)
 		}
 	}
+	s.fillUpper()
 	// 2^1024 itself is out of range, so the undoing factor is halved and
 	// rescale doubles: see there.
 	return math.Ldexp(1, exponent-1), nil
+}
+
+// fillUpper completes the matrix in the workspace for the assembly kernels.
+func (s *Solver) fillUpper() {
+	if !s.assembly {
+		return
+	}
+	w := s.work
+	for i := range s.n {
+		wr, wi := w.row(i, i)
+		o := i
+		for j := range wr {
+			w.Re[o], w.Im[o] = wr[j], -wi[j]
+			o += w.Stride
+		}
+	}
 }
 
 // rescale undoes the scaling of load.

@@ -23,6 +23,10 @@ func (s *Solver) reduce() {
 	for i := n - 1; i >= 2; i-- {
 		ur, ui := w.row(i, i)
 		s.d[i] = w.Re[i*w.Stride+i]
+		// Padding to a multiple of four must be zero for the assembly kernels.
+		tailR, tailI := w.row(i, (i+3)&^3)
+		clear(tailR[i:])
+		clear(tailI[i:])
 		var sumR, sumI float64
 		for k, x := range ur {
 			y := ui[k]
@@ -47,7 +51,13 @@ func (s *Solver) reduce() {
 		s.tauR[i], s.tauI[i] = tauR, tauI
 
 		qr, qi := s.qr[:i], s.qi[:i]
-		hermitianTimes(qr, qi, w, ur, ui)
+		if s.assembly {
+			hermitianTimesAVX2(&qr[0], &qi[0], &w.Re[0], &w.Im[0], &ur[0], &ui[0], i, w.Stride)
+			clear(s.qr[i : (i+3)&^3])
+			clear(s.qi[i : (i+3)&^3])
+		} else {
+			hermitianTimes(qr, qi, w, ur, ui)
+		}
 		var uAu float64
 		for k, x := range ur {
 			uAu += x*qr[k] + ui[k]*qi[k]
@@ -58,7 +68,11 @@ func (s *Solver) reduce() {
 			qr[k] = tauR*x + tauI*y + eta*ur[k]
 			qi[k] = tauR*y - tauI*x + eta*ui[k]
 		}
-		subtractRankTwo(w, ur, ui, qr, qi)
+		if s.assembly {
+			subtractRankTwoAVX2(&w.Re[0], &w.Im[0], &ur[0], &ui[0], &qr[0], &qi[0], i, w.Stride)
+		} else {
+			subtractRankTwo(w, ur, ui, qr, qi)
+		}
 	}
 	if n >= 2 {
 		// The last reflection is a phase on component 0.

@@ -1,0 +1,512 @@
+#include "textflag.h"
+
+// The loops of kernels.go for AVX2 and FMA. Rows are padded to multiples of
+// four columns, and the padding may be read and written.
+//
+// Operand order of the Go assembler: VFMADD231PD a, b, c is c += a·b.
+
+// func hermitianTimesAVX2(qr, qi, ar, ai, ur, ui *float64, n, stride int)
+//
+// q_k = Σ_j A_jk ū_j over full rows, eight or four columns at a time: no sum
+// across a register is needed.
+TEXT ·hermitianTimesAVX2(SB), NOSPLIT, $0-64
+	MOVQ qr+0(FP), DI
+	MOVQ qi+8(FP), SI
+	MOVQ ar+16(FP), R8
+	MOVQ ai+24(FP), R9
+	MOVQ ur+32(FP), R10
+	MOVQ ui+40(FP), R11
+	MOVQ n+48(FP), CX
+	MOVQ stride+56(FP), DX
+	SHLQ $3, DX
+	MOVQ CX, BX // columns left
+
+timesWide:
+	CMPQ BX, $4
+	JLE  timesNarrow
+	VXORPD Y0, Y0, Y0
+	VXORPD Y1, Y1, Y1
+	VXORPD Y2, Y2, Y2
+	VXORPD Y3, Y3, Y3
+	VXORPD Y4, Y4, Y4
+	VXORPD Y5, Y5, Y5
+	VXORPD Y6, Y6, Y6
+	VXORPD Y7, Y7, Y7
+	MOVQ R8, R12
+	MOVQ R9, R13
+	XORQ AX, AX
+
+timesWideRow:
+	VBROADCASTSD (R10)(AX*8), Y8
+	VBROADCASTSD (R11)(AX*8), Y9
+	VMOVUPD (R12), Y10
+	VMOVUPD 32(R12), Y11
+	VMOVUPD (R13), Y12
+	VMOVUPD 32(R13), Y13
+	VFMADD231PD Y10, Y8, Y0
+	VFMADD231PD Y11, Y8, Y1
+	VFMADD231PD Y12, Y9, Y2
+	VFMADD231PD Y13, Y9, Y3
+	VFMADD231PD Y10, Y9, Y4
+	VFMADD231PD Y11, Y9, Y5
+	VFMADD231PD Y12, Y8, Y6
+	VFMADD231PD Y13, Y8, Y7
+	ADDQ DX, R12
+	ADDQ DX, R13
+	INCQ AX
+	CMPQ AX, CX
+	JLT  timesWideRow
+	VSUBPD Y2, Y0, Y0
+	VSUBPD Y3, Y1, Y1
+	VADDPD Y6, Y4, Y4
+	VADDPD Y7, Y5, Y5
+	VMOVUPD Y0, (DI)
+	VMOVUPD Y1, 32(DI)
+	VMOVUPD Y4, (SI)
+	VMOVUPD Y5, 32(SI)
+	ADDQ $64, DI
+	ADDQ $64, SI
+	ADDQ $64, R8
+	ADDQ $64, R9
+	SUBQ $8, BX
+	JMP  timesWide
+
+timesNarrow:
+	TESTQ BX, BX
+	JLE  timesDone
+	VXORPD Y0, Y0, Y0
+	VXORPD Y2, Y2, Y2
+	VXORPD Y4, Y4, Y4
+	VXORPD Y6, Y6, Y6
+	XORQ AX, AX
+
+timesNarrowRow:
+	VBROADCASTSD (R10)(AX*8), Y8
+	VBROADCASTSD (R11)(AX*8), Y9
+	VMOVUPD (R8), Y10
+	VMOVUPD (R9), Y12
+	VFMADD231PD Y10, Y8, Y0
+	VFMADD231PD Y12, Y9, Y2
+	VFMADD231PD Y10, Y9, Y4
+	VFMADD231PD Y12, Y8, Y6
+	ADDQ DX, R8
+	ADDQ DX, R9
+	INCQ AX
+	CMPQ AX, CX
+	JLT  timesNarrowRow
+	VSUBPD Y2, Y0, Y0
+	VADDPD Y6, Y4, Y4
+	VMOVUPD Y0, (DI)
+	VMOVUPD Y4, (SI)
+
+timesDone:
+	VZEROUPPER
+	RET
+
+// func subtractRankTwoAVX2(ar, ai, ur, ui, wr, wi *float64, n, stride int)
+//
+// A −= u w† + w u† over full rows, four columns at a time.
+TEXT ·subtractRankTwoAVX2(SB), NOSPLIT, $0-64
+	MOVQ ar+0(FP), DI
+	MOVQ ai+8(FP), SI
+	MOVQ ur+16(FP), R8
+	MOVQ ui+24(FP), R9
+	MOVQ wr+32(FP), R10
+	MOVQ wi+40(FP), R11
+	MOVQ n+48(FP), CX
+	MOVQ stride+56(FP), DX
+	SHLQ $3, DX
+	XORQ BX, BX // first column
+
+rankBlock:
+	VMOVUPD (R8)(BX*8), Y0
+	VMOVUPD (R9)(BX*8), Y1
+	VMOVUPD (R10)(BX*8), Y2
+	VMOVUPD (R11)(BX*8), Y3
+	MOVQ DI, R12
+	MOVQ SI, R13
+	XORQ AX, AX
+
+rankRow:
+	VBROADCASTSD (R8)(AX*8), Y4
+	VBROADCASTSD (R9)(AX*8), Y5
+	VBROADCASTSD (R10)(AX*8), Y6
+	VBROADCASTSD (R11)(AX*8), Y7
+	VMOVUPD (R12), Y8
+	VMOVUPD (R13), Y9
+	VFNMADD231PD Y2, Y4, Y8
+	VFNMADD231PD Y3, Y4, Y9
+	VFNMADD231PD Y3, Y5, Y8
+	VFMADD231PD Y2, Y5, Y9
+	VFNMADD231PD Y0, Y6, Y8
+	VFNMADD231PD Y1, Y6, Y9
+	VFNMADD231PD Y1, Y7, Y8
+	VFMADD231PD Y0, Y7, Y9
+	VMOVUPD Y8, (R12)
+	VMOVUPD Y9, (R13)
+	ADDQ DX, R12
+	ADDQ DX, R13
+	INCQ AX
+	CMPQ AX, CX
+	JLT  rankRow
+	ADDQ $32, DI
+	ADDQ $32, SI
+	ADDQ $4, BX
+	CMPQ BX, CX
+	JLT  rankBlock
+	VZEROUPPER
+	RET
+
+// func rotateRowsAVX2(z *float64, stride, columns, reach, count int, c, s *float64)
+//
+// The rotations count−1 … 0 of rows i, i+1 of z (row 0 is the top of the
+// block), columns in groups of 16, 8 and 4. In column k only the rotations
+// below k + reach find anything but zeros.
+TEXT ·rotateRowsAVX2(SB), NOSPLIT, $0-56
+	MOVQ z+0(FP), DI
+	MOVQ stride+8(FP), DX
+	SHLQ $3, DX
+	MOVQ columns+16(FP), BX
+	MOVQ reach+24(FP), R8
+	MOVQ count+32(FP), CX
+	MOVQ c+40(FP), R10
+	MOVQ s+48(FP), R11
+
+rotate16:
+	CMPQ BX, $16
+	JLT  rotate8
+	LEAQ 15(R8), AX
+	CMPQ AX, CX
+	JLE  rotate16Count
+	MOVQ CX, AX
+
+rotate16Count:
+	TESTQ AX, AX
+	JLE  rotate16Next
+	MOVQ AX, R12
+	IMULQ DX, R12
+	ADDQ DI, R12
+	VMOVUPD (R12), Y0
+	VMOVUPD 32(R12), Y1
+	VMOVUPD 64(R12), Y2
+	VMOVUPD 96(R12), Y3
+
+rotate16Row:
+	VBROADCASTSD -8(R10)(AX*8), Y8
+	VBROADCASTSD -8(R11)(AX*8), Y9
+	MOVQ R12, R13
+	SUBQ DX, R12
+	VMOVUPD (R12), Y4
+	VMOVUPD 32(R12), Y5
+	VMOVUPD 64(R12), Y6
+	VMOVUPD 96(R12), Y7
+	VMULPD Y4, Y9, Y10
+	VMULPD Y5, Y9, Y11
+	VMULPD Y6, Y9, Y12
+	VMULPD Y7, Y9, Y13
+	VMULPD Y4, Y8, Y4
+	VMULPD Y5, Y8, Y5
+	VMULPD Y6, Y8, Y6
+	VMULPD Y7, Y8, Y7
+	VFMADD231PD Y0, Y8, Y10
+	VFMADD231PD Y1, Y8, Y11
+	VFMADD231PD Y2, Y8, Y12
+	VFMADD231PD Y3, Y8, Y13
+	VMOVUPD Y10, (R13)
+	VMOVUPD Y11, 32(R13)
+	VMOVUPD Y12, 64(R13)
+	VMOVUPD Y13, 96(R13)
+	VFNMADD213PD Y4, Y9, Y0
+	VFNMADD213PD Y5, Y9, Y1
+	VFNMADD213PD Y6, Y9, Y2
+	VFNMADD213PD Y7, Y9, Y3
+	DECQ AX
+	JNZ  rotate16Row
+	VMOVUPD Y0, (R12)
+	VMOVUPD Y1, 32(R12)
+	VMOVUPD Y2, 64(R12)
+	VMOVUPD Y3, 96(R12)
+
+rotate16Next:
+	ADDQ $128, DI
+	ADDQ $16, R8
+	SUBQ $16, BX
+	JMP  rotate16
+
+rotate8:
+	CMPQ BX, $8
+	JLT  rotate4
+	LEAQ 7(R8), AX
+	CMPQ AX, CX
+	JLE  rotate8Count
+	MOVQ CX, AX
+
+rotate8Count:
+	TESTQ AX, AX
+	JLE  rotate8Next
+	MOVQ AX, R12
+	IMULQ DX, R12
+	ADDQ DI, R12
+	VMOVUPD (R12), Y0
+	VMOVUPD 32(R12), Y1
+
+rotate8Row:
+	VBROADCASTSD -8(R10)(AX*8), Y8
+	VBROADCASTSD -8(R11)(AX*8), Y9
+	MOVQ R12, R13
+	SUBQ DX, R12
+	VMOVUPD (R12), Y4
+	VMOVUPD 32(R12), Y5
+	VMULPD Y4, Y9, Y10
+	VMULPD Y5, Y9, Y11
+	VMULPD Y4, Y8, Y4
+	VMULPD Y5, Y8, Y5
+	VFMADD231PD Y0, Y8, Y10
+	VFMADD231PD Y1, Y8, Y11
+	VMOVUPD Y10, (R13)
+	VMOVUPD Y11, 32(R13)
+	VFNMADD213PD Y4, Y9, Y0
+	VFNMADD213PD Y5, Y9, Y1
+	DECQ AX
+	JNZ  rotate8Row
+	VMOVUPD Y0, (R12)
+	VMOVUPD Y1, 32(R12)
+
+rotate8Next:
+	ADDQ $64, DI
+	ADDQ $8, R8
+	SUBQ $8, BX
+
+rotate4:
+	CMPQ BX, $4
+	JLT  rotateDone
+	LEAQ 3(R8), AX
+	CMPQ AX, CX
+	JLE  rotate4Count
+	MOVQ CX, AX
+
+rotate4Count:
+	TESTQ AX, AX
+	JLE  rotateDone
+	MOVQ AX, R12
+	IMULQ DX, R12
+	ADDQ DI, R12
+	VMOVUPD (R12), Y0
+
+rotate4Row:
+	VBROADCASTSD -8(R10)(AX*8), Y8
+	VBROADCASTSD -8(R11)(AX*8), Y9
+	MOVQ R12, R13
+	SUBQ DX, R12
+	VMOVUPD (R12), Y4
+	VMULPD Y4, Y9, Y10
+	VMULPD Y4, Y8, Y4
+	VFMADD231PD Y0, Y8, Y10
+	VMOVUPD Y10, (R13)
+	VFNMADD213PD Y4, Y9, Y0
+	DECQ AX
+	JNZ  rotate4Row
+	VMOVUPD Y0, (R12)
+
+rotateDone:
+	VZEROUPPER
+	RET
+
+// func rootsAVX2(c, s *float64, count int)
+//
+// Replaces each element x by √|x| with the sign of x.
+TEXT ·rootsAVX2(SB), NOSPLIT, $0-24
+	MOVQ c+0(FP), DI
+	MOVQ s+8(FP), SI
+	MOVQ count+16(FP), CX
+	VPCMPEQD Y0, Y0, Y0
+	VPSLLQ $63, Y0, Y0 // sign bits
+	XORQ AX, AX
+
+roots:
+	VMOVUPD (DI)(AX*8), Y1
+	VMOVUPD (SI)(AX*8), Y2
+	VANDNPD Y1, Y0, Y3
+	VANDNPD Y2, Y0, Y4
+	VANDPD Y1, Y0, Y1
+	VANDPD Y2, Y0, Y2
+	VSQRTPD Y3, Y3
+	VSQRTPD Y4, Y4
+	VORPD Y3, Y1, Y1
+	VORPD Y4, Y2, Y2
+	VMOVUPD Y1, (DI)(AX*8)
+	VMOVUPD Y2, (SI)(AX*8)
+	ADDQ $4, AX
+	CMPQ AX, CX
+	JLT  roots
+	VZEROUPPER
+	RET
+
+// func reflectAVX2(yr, yi *float64, yStride int, ur, ui *float64, uStride int, tauR, tauI *float64, n, columns int)
+//
+// Applies the reflections k = 2 … n−1, ū_k in row k of u, to the vectors in
+// the columns of y: component j of the vectors in row j. Eight vectors at a
+// time while more than four are left, then four.
+TEXT ·reflectAVX2(SB), NOSPLIT, $0-80
+	MOVQ yr+0(FP), DI
+	MOVQ yi+8(FP), SI
+	SUBQ DI, SI // distance from re to im
+	MOVQ yStride+16(FP), DX
+	SHLQ $3, DX
+	MOVQ uStride+40(FP), R10
+	SHLQ $3, R10
+	MOVQ tauR+48(FP), R11
+	MOVQ tauI+56(FP), R12
+	MOVQ n+64(FP), CX
+
+reflectBlock:
+	MOVQ ur+24(FP), R8
+	MOVQ ui+32(FP), R9
+	LEAQ (R8)(R10*2), R8
+	LEAQ (R9)(R10*2), R9
+	MOVQ $2, BX
+	CMPQ columns+72(FP), $4
+	JLE  reflect4
+
+reflect8:
+	CMPQ BX, CX
+	JGE  reflect8Done
+	VXORPD Y0, Y0, Y0
+	VXORPD Y1, Y1, Y1
+	VXORPD Y2, Y2, Y2
+	VXORPD Y3, Y3, Y3
+	VXORPD Y4, Y4, Y4
+	VXORPD Y5, Y5, Y5
+	VXORPD Y6, Y6, Y6
+	VXORPD Y7, Y7, Y7
+	MOVQ DI, R13
+	XORQ AX, AX
+
+reflect8Dot:
+	VBROADCASTSD (R8)(AX*8), Y8
+	VBROADCASTSD (R9)(AX*8), Y9
+	VMOVUPD (R13), Y10
+	VMOVUPD 32(R13), Y11
+	VMOVUPD (R13)(SI*1), Y12
+	VMOVUPD 32(R13)(SI*1), Y13
+	VFMADD231PD Y10, Y8, Y0
+	VFMADD231PD Y11, Y8, Y1
+	VFMADD231PD Y12, Y9, Y2
+	VFMADD231PD Y13, Y9, Y3
+	VFMADD231PD Y12, Y8, Y4
+	VFMADD231PD Y13, Y8, Y5
+	VFMADD231PD Y10, Y9, Y6
+	VFMADD231PD Y11, Y9, Y7
+	ADDQ DX, R13
+	INCQ AX
+	CMPQ AX, BX
+	JLT  reflect8Dot
+	VSUBPD Y2, Y0, Y0
+	VSUBPD Y3, Y1, Y1
+	VADDPD Y6, Y4, Y4
+	VADDPD Y7, Y5, Y5
+	VBROADCASTSD (R11)(BX*8), Y8
+	VBROADCASTSD (R12)(BX*8), Y9
+	VMULPD Y0, Y8, Y10
+	VMULPD Y1, Y8, Y11
+	VMULPD Y4, Y8, Y12
+	VMULPD Y5, Y8, Y13
+	VFNMADD231PD Y4, Y9, Y10
+	VFNMADD231PD Y5, Y9, Y11
+	VFMADD231PD Y0, Y9, Y12
+	VFMADD231PD Y1, Y9, Y13
+	MOVQ DI, R13
+	XORQ AX, AX
+
+reflect8Subtract:
+	VBROADCASTSD (R8)(AX*8), Y8
+	VBROADCASTSD (R9)(AX*8), Y9
+	VMOVUPD (R13), Y0
+	VMOVUPD 32(R13), Y1
+	VMOVUPD (R13)(SI*1), Y2
+	VMOVUPD 32(R13)(SI*1), Y3
+	VFNMADD231PD Y10, Y8, Y0
+	VFNMADD231PD Y11, Y8, Y1
+	VFNMADD231PD Y12, Y8, Y2
+	VFNMADD231PD Y13, Y8, Y3
+	VFNMADD231PD Y12, Y9, Y0
+	VFNMADD231PD Y13, Y9, Y1
+	VFMADD231PD Y10, Y9, Y2
+	VFMADD231PD Y11, Y9, Y3
+	VMOVUPD Y0, (R13)
+	VMOVUPD Y1, 32(R13)
+	VMOVUPD Y2, (R13)(SI*1)
+	VMOVUPD Y3, 32(R13)(SI*1)
+	ADDQ DX, R13
+	INCQ AX
+	CMPQ AX, BX
+	JLT  reflect8Subtract
+	ADDQ R10, R8
+	ADDQ R10, R9
+	INCQ BX
+	JMP  reflect8
+
+reflect8Done:
+	ADDQ $64, DI
+	SUBQ $8, columns+72(FP)
+	JGT  reflectBlock
+	VZEROUPPER
+	RET
+
+reflect4:
+	CMPQ BX, CX
+	JGE  reflect4Done
+	VXORPD Y0, Y0, Y0
+	VXORPD Y2, Y2, Y2
+	VXORPD Y4, Y4, Y4
+	VXORPD Y6, Y6, Y6
+	MOVQ DI, R13
+	XORQ AX, AX
+
+reflect4Dot:
+	VBROADCASTSD (R8)(AX*8), Y8
+	VBROADCASTSD (R9)(AX*8), Y9
+	VMOVUPD (R13), Y10
+	VMOVUPD (R13)(SI*1), Y12
+	VFMADD231PD Y10, Y8, Y0
+	VFMADD231PD Y12, Y9, Y2
+	VFMADD231PD Y12, Y8, Y4
+	VFMADD231PD Y10, Y9, Y6
+	ADDQ DX, R13
+	INCQ AX
+	CMPQ AX, BX
+	JLT  reflect4Dot
+	VSUBPD Y2, Y0, Y0
+	VADDPD Y6, Y4, Y4
+	VBROADCASTSD (R11)(BX*8), Y8
+	VBROADCASTSD (R12)(BX*8), Y9
+	VMULPD Y0, Y8, Y10
+	VMULPD Y4, Y8, Y12
+	VFNMADD231PD Y4, Y9, Y10
+	VFMADD231PD Y0, Y9, Y12
+	MOVQ DI, R13
+	XORQ AX, AX
+
+reflect4Subtract:
+	VBROADCASTSD (R8)(AX*8), Y8
+	VBROADCASTSD (R9)(AX*8), Y9
+	VMOVUPD (R13), Y0
+	VMOVUPD (R13)(SI*1), Y2
+	VFNMADD231PD Y10, Y8, Y0
+	VFNMADD231PD Y12, Y8, Y2
+	VFNMADD231PD Y12, Y9, Y0
+	VFMADD231PD Y10, Y9, Y2
+	VMOVUPD Y0, (R13)
+	VMOVUPD Y2, (R13)(SI*1)
+	ADDQ DX, R13
+	INCQ AX
+	CMPQ AX, BX
+	JLT  reflect4Subtract
+	ADDQ R10, R8
+	ADDQ R10, R9
+	INCQ BX
+	JMP  reflect4
+
+reflect4Done:
+	VZEROUPPER
+	RET
