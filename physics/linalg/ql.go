@@ -50,12 +50,17 @@ func (s *Solver) diagonalise(vectors bool) error {
 		s.startVectors()
 	}
 	small := epsilon / 8 * norm
+	candidate := 4 * epsilon * norm // above every t below
+	candidate *= candidate
 	sweeps := 0
 	for l := 0; l < n-1; l++ {
 		var topSign uint64 // sign of the off-diagonal l, l+1
 		for {
 			m := l
 			for ; m < n-1; m++ {
+				if e2[m] > candidate {
+					continue
+				}
 				t := max(small, epsilon*(math.Abs(d[m])+math.Abs(d[m+1])))
 				if e2[m] <= t*t {
 					break

@@ -1,6 +1,9 @@
 package linalg
 
-import "math"
+import (
+	"fmt"
+	"math"
+)
 
 // Solver finds eigenvalues and eigenvectors of Hermitian matrices of one size.
 // It holds the workspace, so a solve allocates nothing; use one Solver per
@@ -48,7 +51,7 @@ func (s *Solver) Size() int { return s.n }
 
 // Values stores the eigenvalues of the Hermitian matrix a in dst, ascending.
 // Only the lower triangle of a is read; a is left unchanged. The error wraps
-// ErrNotFinite if an element is NaN or infinite.
+// ErrNotFinite if an element, or an eigenvalue, is NaN or infinite.
 func (s *Solver) Values(dst []float64, a *Matrix) error {
 	mustHaveLength("Values", dst, s.n)
 	mustHaveSize("Values", a, s.n)
@@ -62,8 +65,7 @@ func (s *Solver) Values(dst []float64, a *Matrix) error {
 	}
 	copy(dst, s.d)
 	insertionSort(dst)
-	rescale(dst, scale)
-	return nil
+	return rescale(dst, scale)
 }
 
 // Vectors stores the eigenvalues of the Hermitian matrix a in dst, ascending,
@@ -87,9 +89,8 @@ func (s *Solver) Vectors(dst []float64, v, a *Matrix) error {
 	for i, from := range s.order {
 		dst[i] = s.d[from]
 	}
-	rescale(dst, scale)
 	s.backTransform(v)
-	return nil
+	return rescale(dst, scale)
 }
 
 // Sums of squares within these bounds leave room for all intermediate
@@ -162,13 +163,17 @@ func (s *Solver) fillUpper() {
 }
 
 // rescale undoes the scaling of load.
-func rescale(values []float64, undo float64) {
+func rescale(values []float64, undo float64) error {
 	if undo == 1 || undo == 0 {
-		return
+		return nil
 	}
 	for i := range values {
 		values[i] = values[i] * undo * 2
+		if !finite(values[i]) {
+			return fmt.Errorf("eigenvalue %d (counted from 1) is out of range: %w", i+1, ErrNotFinite)
+		}
 	}
+	return nil
 }
 
 // largestElement returns the largest real or imaginary part of the lower
