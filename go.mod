@@ -14,3 +14,5 @@ require (
 )
 
 require github.com/spf13/pflag v1.0.10
+
+require golang.org/x/text v0.28.0 // indirect
