@@ -20,7 +20,8 @@
 // sweep (ql.go; Parlett, The Symmetric Eigenvalue Problem, SIAM 1998, §8.14-8.15). For
 // vectors the rotations of each sweep are recovered from their squared
 // cosines, applied to a real matrix, and the reflections are applied to its
-// rows at the end (kernels.go). The problem with overlap is brought to the
+// rows at the end (vectors.go). The inner loops are in kernels.go, and again
+// for processors with AVX2 in kernels_amd64.s; the tests run both. The problem with overlap is brought to the
 // plain one by the Cholesky factors of S (general.go; Golub and Van Loan,
 // Matrix Computations, 4th ed. 2013, §8.7).
 //

@@ -308,3 +308,37 @@ func TestNoAllocation(t *testing.T) {
 		}
 	}
 }
+
+// Matrices of few small integers give exact zeros everywhere: quarter turns,
+// splits and degenerate levels in all combinations.
+func TestSmallIntegers(t *testing.T) {
+	r := rand.New(rand.NewPCG(23, 24))
+	pick := func(from []float64) float64 { return from[r.IntN(len(from))] }
+	choices := [][]float64{{0, 1}, {0, 0, 0, 1, -1}, {0, 1, -1, 2}, {0, 1, 1e-9, 1e-17}, {0, 0, 1, 1e-140, 1e140}}
+	count := 4000
+	if testing.Short() {
+		count = 400
+	}
+	for i := range count {
+		from := choices[i%len(choices)]
+		n := 2 + r.IntN(11)
+		a := NewMatrix(n)
+		tridiagonal, real := r.IntN(3) == 0, r.IntN(2) == 0
+		for i := range n {
+			for j := range i {
+				if tridiagonal && j < i-1 {
+					continue
+				}
+				im := pick(from)
+				if real {
+					im = 0
+				}
+				a.Set(i, j, pick(from), im)
+			}
+			if r.IntN(2) == 0 {
+				a.Set(i, i, pick(from), 0)
+			}
+		}
+		solveBoth(t, a)
+	}
+}
