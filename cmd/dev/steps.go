@@ -86,7 +86,10 @@ func (w *workshop) commandTo(ctx context.Context, out io.Writer, env []string, n
 	// An interrupt reaches the child too; give it time to clean up.
 	cmd.Cancel = func() error { return cmd.Process.Signal(os.Interrupt) }
 	cmd.WaitDelay = 10 * time.Second
-	return cmd.Run()
+	if err := cmd.Run(); err != nil {
+		return fmt.Errorf("%s %s: %w", filepath.Base(name), strings.Join(args[:min(1, len(args))], " "), err)
+	}
+	return nil
 }
 
 // tags is the flag that every go command of ours needs.
