@@ -21,6 +21,9 @@ func TestGeneralBatteries(t *testing.T) {
 	r := rand.New(rand.NewPCG(13, 14))
 	for _, b := range batteries {
 		for _, n := range []int{1, 2, 3, 4, 5, 7, 8, 9, 10, 16, 20, 31, 40, 60} {
+			if testing.Short() && n > 20 {
+				continue
+			}
 			a, s := b.make(r, n), positive(r, n, 0.4)
 			g, v := NewGeneralSolver(n), NewMatrix(n)
 			e, only := make([]float64, n), make([]float64, n)

@@ -90,9 +90,8 @@ func (s *Solver) sweep(l, m int, topSign uint64) uint64 {
 	cosines, sines := s.cos[:m+1], s.sin[:m+1]
 
 	// Wilkinson's shift: the eigenvalue of the top 2×2 block nearer to d[l].
-	root := math.Sqrt(e2[l])
-	h := (d[l+1] - d[l]) / (2 * root)
-	shift := d[l] - root/(h+math.Copysign(math.Sqrt(1+h*h), h))
+	half := (d[l+1] - d[l]) / 2
+	shift := d[l] - e2[l]/(half+math.Copysign(math.Sqrt(half*half+e2[l]), half))
 
 	gamma := d[m] - shift
 	p := gamma * gamma
