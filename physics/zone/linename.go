@@ -48,10 +48,13 @@ var cubic = map[string]*cubicNames{
 		points: map[string]mgl64.Vec3{"Γ": {}, "X": {1, 0, 0}, "L": {.5, .5, .5}, "W": {1, .5, 0}, "K": {.75, .75, 0}, "U": {1, .25, .25}},
 		lines: []namedLine{
 			{"Δ", "Γ", "X"}, {"Λ", "Γ", "L"}, {"Σ", "Γ", "K"}, {"S", "X", "U"}, {"Z", "X", "W"}, {"Q", "L", "W"},
+			// The edge U–W equals K–W modulo a reciprocal vector, so it takes the same name.
+			{"plane Γ X W K", "U", "W"},
 		},
 		planes: []namedPlane{
 			{"plane Γ X W K", [3]string{"Γ", "X", "W"}}, {"plane X W U", [3]string{"X", "W", "U"}},
-			{"plane Γ K L", [3]string{"Γ", "K", "L"}}, {"plane Γ X U L", [3]string{"Γ", "X", "L"}},
+			// One plane {110}, of which the wedge holds two parts that meet on the hexagon.
+			{"plane Γ X U L K", [3]string{"Γ", "K", "L"}}, {"plane Γ X U L K", [3]string{"Γ", "X", "L"}},
 		},
 		shifts: []mgl64.Vec3{{1, 1, 1}, {1, 1, -1}, {1, -1, 1}, {-1, 1, 1}, {2, 0, 0}, {0, 2, 0}, {0, 0, 2}},
 	},
