@@ -70,7 +70,9 @@ func Compute(ctx context.Context, m hamiltonian.Model, s *path.Sampling, o Optio
 	if workers <= 0 {
 		workers = runtime.GOMAXPROCS(0)
 	}
-	size := min(max(nk/(4*workers), 16), 1024)
+	// The size of the blocks does not depend on the number of workers, nor
+	// does the result.
+	size := min(max(nk/32, 16), 1024)
 	blocks := (nk + size - 1) / size
 	workers = min(workers, blocks)
 	bases := make([]int, blocks) // the sample to whose levels a block's curves refer

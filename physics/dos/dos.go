@@ -249,8 +249,8 @@ func (d *DOS) corners(t, n int) ([4]float64, [4]int) {
 	})
 }
 
-// bandRange returns the lowest and highest energy of band n on the mesh.
-func (d *DOS) bandRange(n int) (low, high float64) {
+// BandRange returns the lowest and highest energy of band n on the mesh.
+func (d *DOS) BandRange(n int) (low, high float64) {
 	low, high = math.Inf(1), math.Inf(-1)
 	for i := n; i < len(d.E); i += d.N {
 		low, high = min(low, d.E[i]), max(high, d.E[i])
@@ -260,8 +260,8 @@ func (d *DOS) bandRange(n int) (low, high float64) {
 
 // Range returns the lowest and the highest energy on the mesh, eV.
 func (d *DOS) Range() (low, high float64) {
-	low, _ = d.bandRange(0)
-	_, high = d.bandRange(d.N - 1)
+	low, _ = d.BandRange(0)
+	_, high = d.BandRange(d.N - 1)
 	return low, high
 }
 
@@ -269,7 +269,7 @@ func (d *DOS) Range() (low, high float64) {
 // the density of states there, from the linear tetrahedra.
 func (d *DOS) Count(x float64) (electrons, dens float64) {
 	for n := range d.N {
-		low, high := d.bandRange(n)
+		low, high := d.BandRange(n)
 		c, g := d.countBand(n, low, high, x)
 		electrons += c
 		dens += g
@@ -305,7 +305,7 @@ func (d *DOS) countBand(n int, low, high, x float64) (filled, dens float64) {
 func (d *DOS) Above(band int, x float64) float64 {
 	filled := 0.0
 	for n := band; n < d.N; n++ {
-		low, high := d.bandRange(n)
+		low, high := d.BandRange(n)
 		c, _ := d.countBand(n, low, high, x)
 		filled += c
 	}
@@ -318,7 +318,7 @@ func (d *DOS) findFermiLevel() {
 	type limits struct{ low, high float64 }
 	bands := make([]limits, d.N)
 	for n := range bands {
-		bands[n].low, bands[n].high = d.bandRange(n)
+		bands[n].low, bands[n].high = d.BandRange(n)
 	}
 	wanted := d.Electrons / d.Degeneracy
 	if filled := math.Round(wanted); math.Abs(wanted-filled) < 1e-9 {

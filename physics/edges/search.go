@@ -76,6 +76,9 @@ const window = 0.5 // eV
 
 const mostCandidates = 16
 
+// tie is the difference of extrema that counts as none, eV.
+const tie = 1e-8
+
 // lowest returns the place and the value of the smallest quantity.
 func (s *search) lowest(ctx context.Context, extra []lattice.FracK) (lattice.FracK, float64, error) {
 	list := s.meshMinima()
@@ -92,7 +95,7 @@ func (s *search) lowest(ctx context.Context, extra []lattice.FracK) (lattice.Fra
 	}
 	byValue()
 	rough := list[0].f
-	best := candidate{f: math.Inf(1)}
+	best, smallest := candidate{f: math.Inf(1)}, math.MaxInt
 	for _, c := range list {
 		if err := ctx.Err(); err != nil {
 			return lattice.FracK{}, 0, err
@@ -100,8 +103,12 @@ func (s *search) lowest(ctx context.Context, extra []lattice.FracK) (lattice.Fra
 		if c.f > rough+1e-3 {
 			break
 		}
-		if c = s.polish(c); c.f < best.f-1e-9 {
-			best = c
+		// Of equal extrema, as on a band that is flat along a line, take the
+		// one of highest symmetry.
+		c = s.polish(c)
+		size := len(s.group.Star(c.k, true))
+		if c.f < best.f-tie || c.f < best.f+tie && size < smallest {
+			best, smallest = c, size
 		}
 	}
 	return best.k, best.f, s.err

@@ -100,6 +100,9 @@ func (p *places) name(star []lattice.FracK) (lattice.FracK, string) {
 		k[i] -= math.Round(k[i])
 	}
 	c := p.setting.FromFrac(lattice.TwoPiOverA, k)
+	for i, x := range c {
+		c[i] = math.Round(x*1e4)/1e4 + 0 // no minus sign before zero
+	}
 	return k, strings.ReplaceAll(fmt.Sprintf("(%.4f, %.4f, %.4f)·2π/a", c[0], c[1], c[2]), "-", "−")
 }
 
