@@ -57,8 +57,12 @@ func TestPeerRatio(t *testing.T) {
 	if out, err := build.CombinedOutput(); err != nil {
 		t.Fatalf("cannot build the LAPACK program (gcc and libopenblas-dev are needed): %v\n%s", err, out)
 	}
-	python := "/usr/bin/python3"
-	withNumpy := exec.Command(python, "-c", "import numpy").Run() == nil
+	python, withNumpy := "", false
+	for _, python = range []string{"python3", "/usr/bin/python3"} { // the system's, if another comes first
+		if withNumpy = exec.Command(python, "-c", "import numpy").Run() == nil; withNumpy {
+			break
+		}
+	}
 
 	const (
 		rounds       = 9
