@@ -95,7 +95,7 @@ func SymmetryName(s lattice.Setting, k lattice.FracK) string {
 	if _, ok := cubic[s.Bravais]; !ok {
 		return ""
 	}
-	return cubicName(s.Bravais, mgl64.Vec3(s.FromFrac(lattice.Conventional, k)))
+	return cubicName(s.Bravais, cubicAxes(s).Mul3x1(mgl64.Vec3(k)))
 }
 
 // cubicName names the point u along the cubic axes, units 2π/a.

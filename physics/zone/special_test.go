@@ -109,6 +109,39 @@ func TestSpecialPointsOfAnyCell(t *testing.T) {
 	}
 }
 
+// A lattice typed with seven digits keeps its special points on the spot.
+func TestSpecialPointsOfRoundedCell(t *testing.T) {
+	const h = 5.431 / 2
+	odd, err := crystal.FromSites([3]mgl64.Vec3{{2e-6, h, h}, {h, -1e-6, h + 3e-6}, {h - 2e-6, h, 0}}, []crystal.Site{{Element: "Al"}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	points, err := SpecialPoints(odd.Setting)
+	if err != nil {
+		t.Fatal(err)
+	}
+	g, err := symmetry.Find(odd, symmetry.DefaultTolerance)
+	if err != nil {
+		t.Fatal(err)
+	}
+	straight, _ := SpecialPoints(prototype(t, "fcc", "Al").Setting)
+	for i, p := range points {
+		if mgl64.Vec3(p.K).Sub(mgl64.Vec3(straight[i].K)).Len() > 1e-14 {
+			t.Errorf("%s at %v, want %v", p.Label, p.K, straight[i].K)
+		}
+		if name := SymmetryName(odd.Setting, p.K); name != p.Label {
+			t.Errorf("%s is named %q", p.Label, name)
+		}
+		if p.Label == "L" && len(g.LittleCoGroup(p.K)) != 12 {
+			t.Errorf("L is left in place by %d operations", len(g.LittleCoGroup(p.K)))
+		}
+	}
+	z := mustFirst(t, odd.Lattice())
+	if w, err := z.Wedge(g); err != nil || math.Abs(w.Volume()*48/z.Volume()-1) > 1e-5 {
+		t.Errorf("wedge: %v", err)
+	}
+}
+
 func TestSpecialPointsNotAvailable(t *testing.T) {
 	c, err := crystal.FromSites([3]mgl64.Vec3{{3, 0, 0}, {0, 4, 0}, {0, 0, 5}}, []crystal.Site{{Element: "Sn"}})
 	if err != nil {

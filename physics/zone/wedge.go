@@ -60,7 +60,7 @@ func (z *Zone) Wedge(g *symmetry.Group) (*Polyhedron, error) {
 func (z *Zone) generalPoint(rotations []mgl64.Mat3) (mgl64.Vec3, error) {
 	var candidates []mgl64.Vec3
 	if s, ok := lattice.CubicSetting(z.Lattice); ok {
-		if points, err := tabledPoints(s); err == nil {
+		if points, err := SpecialPoints(s); err == nil {
 			var sum mgl64.Vec3
 			for _, p := range points {
 				sum = sum.Add(z.Lattice.Cart(p.K).Vec())
