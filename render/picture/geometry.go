@@ -5,6 +5,9 @@ import "math"
 // Point is a place in points, y down.
 type Point struct{ X, Y float64 }
 
+// Pt is the point (x, y).
+func Pt(x, y float64) Point { return Point{x, y} }
+
 // Rect is the rectangle X0 ≤ x ≤ X1, Y0 ≤ y ≤ Y1 in points. It is empty when X1 < X0 or Y1 < Y0.
 type Rect struct{ X0, Y0, X1, Y1 float64 }
 
@@ -16,6 +19,11 @@ var everywhere = Rect{math.Inf(-1), math.Inf(-1), math.Inf(1), math.Inf(1)}
 
 // R is the rectangle with a corner at x, y and the given width and height.
 func R(x, y, width, height float64) Rect { return Rect{x, y, x + width, y + height} }
+
+// Span is the rectangle between two corners in any order.
+func Span(x0, y0, x1, y1 float64) Rect {
+	return Rect{min(x0, x1), min(y0, y1), max(x0, x1), max(y0, y1)}
+}
 
 // W is the width.
 func (r Rect) W() float64 { return r.X1 - r.X0 }
