@@ -2,8 +2,10 @@ package main
 
 import (
 	"context"
+	"errors"
 	"flag"
 	"fmt"
+	"io"
 	"path/filepath"
 	"strings"
 	"time"
@@ -71,7 +73,13 @@ func (w *workshop) checkPlan(files []string, fuzzTime time.Duration, names []str
 			return w.command(ctx, nil, "go", "vet", tags(), "./...")
 		}},
 		{"staticcheck", func(ctx context.Context) error {
-			return w.command(ctx, nil, "go", "run", staticcheckModule, tags(), "./...")
+			var said strings.Builder
+			err := w.commandTo(ctx, io.MultiWriter(w.out, &said), nil, "go", "run", staticcheckModule, tags(), "./...")
+			if err == nil && strings.Contains(said.String(), "matched no packages") {
+				// Where the packages cannot be loaded it warns and ends with status 0.
+				return errors.New("staticcheck found no packages to look at")
+			}
+			return err
 		}},
 		{"test", func(ctx context.Context) error {
 			// vet has its own step.
