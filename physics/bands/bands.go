@@ -3,6 +3,7 @@ package bands
 import (
 	"context"
 	"fmt"
+	"math"
 	"runtime"
 	"sync"
 	"sync/atomic"
@@ -59,7 +60,7 @@ func Compute(ctx context.Context, m hamiltonian.Model, s *path.Sampling, o Optio
 		b.Groups = hamiltonian.Groups(basis)
 		b.W = make([]float64, nk*n*len(b.Groups))
 		b.NetBond = make([]float64, nk*n)
-		site = newOnSite(m)
+		site = newOnSite(m, b.Groups)
 	}
 	if nk == 0 {
 		return b, nil
@@ -168,11 +169,12 @@ func (b *Bands) chain(bases []int, size int, starts []marks) {
 type onSite struct {
 	row, column []int
 	re, im      []float64
+	level       []float64 // the energy of each group, if each has one and nothing couples them; else nil
 }
 
 // newOnSite finds it as the mean of H over a regular mesh fine enough that
 // every bond's phase averages to zero.
-func newOnSite(m hamiltonian.Model) *onSite {
+func newOnSite(m hamiltonian.Model, groups []hamiltonian.Group) *onSite {
 	if m.Overlapping() {
 		return nil
 	}
@@ -215,7 +217,30 @@ func newOnSite(m hamiltonian.Model) *onSite {
 			s.re, s.im = append(s.re, re), append(s.im, im)
 		}
 	}
+	s.level = s.levels(groups, n)
 	return s
+}
+
+// levels returns the on-site energy of each group when H₀ is diagonal and the
+// same for all functions of a group, as without spin–orbit coupling.
+func (s *onSite) levels(groups []hamiltonian.Group, n int) []float64 {
+	diagonal := make([]float64, n)
+	for i, a := range s.row {
+		if a != s.column[i] {
+			return nil
+		}
+		diagonal[a] = s.re[i]
+	}
+	levels := make([]float64, len(groups))
+	for g, group := range groups {
+		levels[g] = diagonal[group.Members[0]]
+		for _, a := range group.Members {
+			if math.Abs(diagonal[a]-levels[g]) > 1e-12 {
+				return nil
+			}
+		}
+	}
+	return levels
 }
 
 // energy returns c†H₀c of one state.

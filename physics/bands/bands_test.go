@@ -5,6 +5,7 @@ import (
 	"errors"
 	"math"
 	"slices"
+	"strconv"
 	"testing"
 
 	"bandwright/physics/catalog"
@@ -295,6 +296,77 @@ func TestNoAllocationPerSample(t *testing.T) {
 	if few, many := count(0.01), count(0.001); many > few+20 {
 		t.Errorf("%g allocations for some 500 samples, %g for ten times as many", few, many)
 	}
+}
+
+// A sample exactly where bands meet does not lose them.
+func TestCrossingAtSample(t *testing.T) {
+	m := model(t, "fitted/Al-sp", tightbinding.Options{Factors: map[string]float64{"shell1 spσ": 0, "shell2 spσ": 0, "shell3 spσ": 0}})
+	st := hamiltonian.NewStates(m)
+	setting := m.Crystal().Setting
+	// The s band and the lowest p band along Γ–X, in units of 2π/a along z.
+	difference := func(x float64) float64 {
+		e, v, err := st.Solve(setting.ToFrac(lattice.TwoPiOverA, [3]float64{0, 0, x}))
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, p := math.NaN(), math.Inf(1)
+		for n := range e {
+			c := v.At(n, 0)
+			if w := real(c)*real(c) + imag(c)*imag(c); w > 0.5 {
+				s = e[n]
+			} else {
+				p = min(p, e[n])
+			}
+		}
+		return s - p
+	}
+	low, high := 0.05, 0.95
+	if difference(low)*difference(high) > 0 {
+		t.Fatal("the bands do not cross: choose another line")
+	}
+	for range 80 {
+		middle := (low + high) / 2
+		if difference(low)*difference(middle) <= 0 {
+			high = middle
+		} else {
+			low = middle
+		}
+	}
+	end := min(2*low, 1)
+	for _, step := range []float64{low / 2, low / 20, low / 200} {
+		s := sampling(t, m, step*2*math.Pi/setting.A, lattice.TwoPiOverA, "0 0 0 0 0 "+strconv.FormatFloat(end, 'g', -1, 64))
+		b := compute(t, m, s, Options{Weights: true})
+		kind := make([]float64, b.N)
+		met := false
+		for ik := 1; ik < len(s.K); ik++ {
+			for n := range b.N {
+				w := b.Weights(ik, n)[0]
+				if w > 1e-9 && w < 1-1e-9 {
+					met = true
+					continue
+				}
+				c := b.Curve[ik*b.N+n]
+				if ik == 1 {
+					kind[c] = w
+				} else if math.Abs(kind[c]-w) > 1e-6 {
+					t.Fatalf("step %g: curve %d changes from s weight %g to %g at sample %d", step, c, kind[c], w, ik)
+				}
+			}
+		}
+		if end < 1 && !met {
+			t.Errorf("step %g: no sample lies on the crossing at %g", step, low)
+		}
+	}
+}
+
+// BenchmarkBands is the time per sample of bands with weights, one worker.
+func BenchmarkBands(b *testing.B) {
+	m := model(b, "vogl1983/Si", tightbinding.Options{})
+	s := sampling(b, m, 6.0/40000, lattice.Primitive, "Γ X W K Γ L")
+	for b.Loop() {
+		compute(b, m, s, Options{Weights: true, Workers: 1})
+	}
+	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(len(s.K)), "ns/k")
 }
 
 // BenchmarkDrag is what a drag of the lattice constant needs: a new model and

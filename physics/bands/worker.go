@@ -27,7 +27,7 @@ type worker struct {
 	evaluator hamiltonian.Evaluator
 	solver    *linalg.Solver
 	general   *linalg.GeneralSolver
-	group     []int32 // basis function → group
+	segments  []segment
 	site      *onSite
 	isBond    []bool
 	terms     []float64
@@ -36,10 +36,31 @@ type worker struct {
 	join      *joiner
 }
 
+// segment is neighbouring basis functions first … last−1 of one group.
+type segment struct{ group, first, last int }
+
+func segmentsOf(groups []hamiltonian.Group, n int) []segment {
+	of := make([]int, n)
+	for g, group := range groups {
+		for _, i := range group.Members {
+			of[i] = g
+		}
+	}
+	var out []segment
+	for i, g := range of {
+		if i > 0 && g == of[i-1] {
+			out[len(out)-1].last++
+		} else {
+			out = append(out, segment{g, i, i + 1})
+		}
+	}
+	return out
+}
+
 func newWorker(m hamiltonian.Model, b *Bands, starts []marks, site *onSite) *worker {
 	w := &worker{
 		b: b, m: m, starts: starts, evaluator: m.NewEvaluator(), site: site,
-		group: make([]int32, b.N), label: make([]int32, b.N), join: newJoiner(b.N),
+		label: make([]int32, b.N), join: newJoiner(b.N), segments: segmentsOf(b.Groups, b.N),
 	}
 	newState := func() *state {
 		s := &state{e: make([]float64, b.N), h: newMatrix(b.N), v: newMatrix(b.N)}
@@ -54,11 +75,6 @@ func newWorker(m hamiltonian.Model, b *Bands, starts []marks, site *onSite) *wor
 		w.general = linalg.NewGeneralSolver(b.N)
 	} else {
 		w.solver = linalg.NewSolver(b.N)
-	}
-	for g, group := range b.Groups {
-		for _, i := range group.Members {
-			w.group[i] = int32(g)
-		}
 	}
 	if site == nil && len(b.Groups) > 0 {
 		for _, t := range m.Terms() {
@@ -178,8 +194,7 @@ func timesHermitian(dst, s, v *linalg.Matrix) {
 func (w *worker) weights(i int) {
 	b, s := w.b, w.now
 	g := len(b.Groups)
-	all := b.W[i*b.N*g : (i+1)*b.N*g]
-	clear(all)
+	all := b.W[i*b.N*g : (i+1)*b.N*g] // zero so far
 	for first := 0; first < b.N; {
 		size := 1
 		for first+size < b.N && joined(s.e, first+size-1) {
@@ -191,12 +206,21 @@ func (w *worker) weights(i int) {
 			re, im := s.v.Re[n*s.v.Stride:][:b.N], s.v.Im[n*s.v.Stride:][:b.N]
 			wr, wi := s.w.Re[n*s.w.Stride:][:b.N], s.w.Im[n*s.w.Stride:][:b.N]
 			// Mulliken weight Re c*(Sc); |c|² in an orthogonal basis.
-			for a, group := range w.group {
-				row[group] += re[a]*wr[a] + im[a]*wi[a]
+			for _, part := range w.segments {
+				sum := 0.0
+				for a := part.first; a < part.last; a++ {
+					sum += re[a]*wr[a] + im[a]*wi[a]
+				}
+				row[part.group] += sum
 			}
 			energy += s.e[n]
-			if w.site != nil {
+			if w.site != nil && w.site.level == nil {
 				onSite += w.site.energy(re, im)
+			}
+		}
+		if w.site != nil {
+			for g, level := range w.site.level {
+				onSite += level * row[g]
 			}
 		}
 		net := (energy - onSite) / float64(size)
