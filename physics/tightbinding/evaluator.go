@@ -12,6 +12,12 @@ import (
 type evaluator struct {
 	m *Model
 	w []float64 // bond orders of one block
+
+	// The matrix elements of each bond term at the k point of the last call
+	// of TermEnergies; all levels of a k point share them.
+	re, im []float64
+	k      lattice.FracK
+	summed bool
 }
 
 // NewEvaluator returns an evaluator for one goroutine.
@@ -20,7 +26,8 @@ func (m *Model) NewEvaluator() hamiltonian.Evaluator {
 	for i := range m.blocks {
 		size = max(size, len(m.blocks[i].v))
 	}
-	return &evaluator{m: m, w: make([]float64, size)}
+	entries := len(m.sums.term)
+	return &evaluator{m: m, w: make([]float64, size), re: make([]float64, entries), im: make([]float64, entries)}
 }
 
 // phase returns cos and sin of k·d, d the vector of the block.
@@ -185,11 +192,29 @@ func (e *evaluator) TermEnergies(k lattice.FracK, v *linalg.Matrix, first, size 
 			dst[s.term] += 2 * mean * (re[s.i]*tr + im[s.i]*ti)
 		}
 	}
-	for i := range m.blocks {
-		b := &m.blocks[i]
-		w := e.orders(b, k, v, first, size)
-		for _, p := range b.parts {
-			dst[p.term] += p.value * w[p.element]
+	if !e.summed || e.k != k {
+		m.sums.at(k, m.blocks, e.re, e.im)
+		e.k, e.summed = k, true
+	}
+	for i := range m.sums.cells {
+		c := &m.sums.cells[i]
+		// ρ = ⟨c_row* c_col⟩; an element off the diagonal stands for two.
+		var rr, ri float64
+		for n := first; n < first+size; n++ {
+			for spin := 0; spin < v.N; spin += m.n0 {
+				at := n*v.Stride + spin
+				ar, ai, br, bi := v.Re[at+c.row], v.Im[at+c.row], v.Re[at+c.col], v.Im[at+c.col]
+				rr += ar*br + ai*bi
+				ri += ar*bi - ai*br
+			}
+		}
+		scale := 2 * mean
+		if c.row == c.col {
+			scale = mean
+		}
+		rr, ri = scale*rr, scale*ri
+		for entry := c.first; entry < c.last; entry++ {
+			dst[m.sums.term[entry]] += rr*e.re[entry] - ri*e.im[entry]
 		}
 	}
 }

@@ -43,6 +43,7 @@ type Model struct {
 	owner  []int     // its on-site term
 	blocks []block   // one per bond
 	spins  []spinEntry
+	sums   termSums
 }
 
 // block is the interaction along one bond: element (i, j) stands between
@@ -100,6 +101,7 @@ func New(c *crystal.Crystal, set *catalog.Set, o Options) (*Model, error) {
 		return nil, err
 	}
 	m.altered = append(m.compare(shells), scale.report()...)
+	m.sums = sumByTerms(m.blocks)
 	if m.spinOrbit {
 		m.double()
 	}
