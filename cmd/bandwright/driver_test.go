@@ -36,15 +36,16 @@ type launch struct {
 
 // window is the running program on its own display.
 type window struct {
-	t       *testing.T
-	display *display
-	process *exec.Cmd
-	log     *debugLog
-	id      string // of the X window
-	started time.Time
-	stderr  *safeBuffer
-	exited  chan struct{}
-	status  error // of the process, once exited is closed
+	t        *testing.T
+	display  *display
+	process  *exec.Cmd
+	log      *debugLog
+	id       string // of the X window
+	started  time.Time
+	computed time.Duration // from the start to the first computed bands
+	stderr   *safeBuffer
+	exited   chan struct{}
+	status   error // of the process, once exited is closed
 }
 
 // safeBuffer is a bytes.Buffer for a process that writes while we read.
@@ -119,6 +120,8 @@ func open(t *testing.T, l launch) *window {
 		w.process.Process.Kill()
 		<-w.exited
 	})
+	w.wait("bands on the screen", 60*time.Second, func(s state) bool { return s.Drawings["bands"] > 0 && s.FocusSize > 0 })
+	w.computed = time.Since(w.started)
 	w.wait("a computed crystal", 60*time.Second, func(s state) bool { return s.ready() })
 	w.id = w.findWindow()
 	// There is no window manager to give the window the keyboard.
@@ -363,7 +366,6 @@ type debugLog struct {
 	rest   []byte
 	lines  int
 	last   state
-	panels map[string]place
 }
 
 type place struct{ X, Y, W, H float64 }
@@ -400,18 +402,20 @@ func (l *debugLog) take(line []byte) error {
 	if len(bytes.TrimSpace(line)) == 0 {
 		return nil
 	}
+	// Maps would be added to, not replaced.
+	l.last.Panels, l.last.Points, l.last.Drawings = nil, nil, nil
 	return json.Unmarshal(line, &l.last)
 }
 
 // panel is the place of a panel in pixels of the display.
 func (l *debugLog) panel(name string) (place, bool) {
-	p, ok := l.panels[name]
+	p, ok := l.last.Panels[name]
 	return place{p.X * l.scale, p.Y * l.scale, p.W * l.scale, p.H * l.scale}, ok
 }
 
 func (l *debugLog) names() []string {
 	var names []string
-	for n := range l.panels {
+	for n := range l.last.Panels {
 		names = append(names, n)
 	}
 	return names

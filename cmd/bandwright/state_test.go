@@ -21,6 +21,20 @@ type state struct {
 	UndoDepth   int        `json:"undo_depth"`
 	File        string     `json:"file"`
 	Busy        bool       `json:"busy"`
+
+	Crystal  string           `json:"crystal"`
+	Fermi    float64          `json:"fermi"`
+	Contrast int              `json:"contrast"` // rows
+	Path     string           `json:"path"`
+	Camera   [5]float64       `json:"camera"`
+	Window   [2]float64       `json:"window"`
+	Colour   string           `json:"colour"`
+	Modified bool             `json:"modified"`
+	Notice   string           `json:"notice"`
+	Problem  string           `json:"problem"`
+	Drawings map[string]int   `json:"drawings"` // finished, by panel
+	Panels   map[string]place `json:"panels"`
+	Points   map[string]place `json:"points"` // special points of the Zone as seen, by label
 }
 
 // ready: the program has computed what its study asks for.

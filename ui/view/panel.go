@@ -131,6 +131,13 @@ func (p *Panel) Drawings() int {
 	return p.drawings
 }
 
+// Busy says whether a drawing is under way.
+func (p *Panel) Busy() bool {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	return p.busy
+}
+
 // image hands the finished image to Fyne. When its size is not the wanted one
 // a new drawing starts, and Fyne stretches the old image for that moment.
 func (p *Panel) image(w, h int) image.Image {
@@ -307,7 +314,11 @@ const wheelStep = 10
 // Scrolled implements fyne.Scrollable.
 func (p *Panel) Scrolled(e *fyne.ScrollEvent) {
 	if p.handler.Wheel != nil && e.Scrolled.DY != 0 {
-		p.handler.Wheel(p.pointer(e.Position, 0), float64(e.Scrolled.DY)/wheelStep)
+		var held fyne.KeyModifier
+		if d, ok := fyne.CurrentApp().Driver().(desktop.Driver); ok {
+			held = d.CurrentKeyModifiers()
+		}
+		p.handler.Wheel(p.pointer(e.Position, held), float64(e.Scrolled.DY)/wheelStep)
 	}
 }
 
