@@ -143,10 +143,10 @@ func Bands(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 	plot.YAxis(s.Picture, ticks, title, style)
 	plot.Frame(s.Picture, style)
 	s.End()
-	s.bandLegend(sn, w)
+	used := s.bandLegend(sn, w)
 	s.bandNotes(sn, plot)
 	if g := v.Glance; g.On && g.OnPath || g.HasEnergy {
-		s.readout(sn, v, plot, zero)
+		s.readout(sn, v, plot, zero, used)
 	}
 	return s.Picture
 }
@@ -275,8 +275,9 @@ func bondingScale(b *bands.Bands) float64 {
 	return thick / strongest
 }
 
-// bandLegend says what the widths mean, in the strip above the plot.
-func (s *sheet) bandLegend(sn *session.Snapshot, w float64) {
+// bandLegend says what the widths mean, in the strip above the plot, and
+// returns where it ends.
+func (s *sheet) bandLegend(sn *session.Snapshot, w float64) (end float64) {
 	t := s.t
 	y := PlotTop - 10
 	x := 58.0
@@ -315,9 +316,12 @@ func (s *sheet) bandLegend(sn *session.Snapshot, w float64) {
 	switch {
 	case sn.BandsCoarse:
 		s.fitMiddle("preview", x, y, smallSize, t.Caution, w-x)
+		x += 50
 	case sn.BandsStale:
 		s.fitMiddle("not yet of this model", x, y, smallSize, t.Caution, w-x)
+		x += 120
 	}
+	return x
 }
 
 // bandMarks draws the pointer's and the held k point, the focused level, the
@@ -438,7 +442,7 @@ func (s *sheet) bandNotes(sn *session.Snapshot, plot chart.Plot) {
 }
 
 // readout tells the energy and the k point under the pointer.
-func (s *sheet) readout(sn *session.Snapshot, v *View, plot chart.Plot, zero float64) {
+func (s *sheet) readout(sn *session.Snapshot, v *View, plot chart.Plot, zero, used float64) {
 	t, g := s.t, v.Glance
 	if g.HasEnergy {
 		y := plot.Y.At(g.Energy)
@@ -463,8 +467,12 @@ func (s *sheet) readout(sn *session.Snapshot, v *View, plot chart.Plot, zero flo
 		return
 	}
 	laid := typeset.Layout(text, textSize, typeset.Style{})
-	x := min(plot.Rect.X1-laid.Width-8, plot.Rect.X0+8)
-	y := plot.Rect.Y1 - 8
+	if x := plot.Rect.X1 - laid.Width; x > used {
+		s.Text(laid, x, PlotTop-10, picture.TextStyle{Color: t.Ink, Align: picture.Middle})
+		return
+	}
+	// No room beside the legend: at the foot of the plot.
+	x, y := plot.Rect.X0+6, plot.Rect.Y1-8
 	s.FillRect(picture.Span(x-5, y-12, x+laid.Width+5, y+5), picture.Fill{Color: alpha(t.Panel, 225), Crisp: true})
 	s.Text(laid, x, y, picture.TextStyle{Color: t.Ink})
 }

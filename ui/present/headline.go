@@ -63,17 +63,25 @@ func Chips(sn *session.Snapshot) []Chip {
 		if edge == nil {
 			return
 		}
-		text := name + " " + edge.Where
+		text, place := name+" "+edge.Where, ""
+		if len([]rune(edge.Where)) >= 18 {
+			text, place = name+" at a general k", "at "+edge.Where+": "
+		}
 		if kind == DirectGap {
-			text = "direct " + number(edge.Energy, 3) + " eV at " + edge.Where
+			text = "direct " + number(edge.Energy, 3) + " eV"
+			if len([]rune(edge.Where)) < 18 {
+				text += " at " + edge.Where
+			} else {
+				place = "the smallest vertical gap, at " + edge.Where + ": "
+			}
 		} else if edge.Valleys > 1 {
 			text += fmt.Sprintf(" ×%d", edge.Valleys)
 		}
-		hint := "click holds this k point and focuses the level"
+		hint := place + "click holds this k point and focuses the level"
 		if sn.Bands != nil && sn.Bands.Sampling != nil && sn.Built != nil {
 			if on, off := edge.OnPath(sn.Built.Crystal.Setting, sn.Bands.Sampling); !on {
 				text += " (off path)"
-				hint = "not on this path, " + number(off, 3) + " Å⁻¹ away: click goes there"
+				hint = place + "not on this path, " + number(off, 3) + " Å⁻¹ away: click goes there"
 			}
 		}
 		list = append(list, Chip{Text: text, Hint: hint, Edge: kind, Goes: true, K: edge.K, Energy: edge.Energy, Level: edge.Level})

@@ -90,43 +90,6 @@ func (h *Hints) hide() {
 	}
 }
 
-// Button is a button with a hint.
-type Button struct {
-	widget.Button
-	hints *Hints
-	hint  string
-}
-
-// NewButton returns a button of low weight.
-func NewButton(h *Hints, label, hint string, tapped func()) *Button {
-	b := &Button{hints: h, hint: hint}
-	b.Text = label
-	b.OnTapped = tapped
-	b.ExtendBaseWidget(b)
-	return b
-}
-
-// SetHint replaces the hint.
-func (b *Button) SetHint(hint string) { b.hint = hint }
-
-// MouseIn implements desktop.Hoverable.
-func (b *Button) MouseIn(e *desktop.MouseEvent) {
-	b.Button.MouseIn(e)
-	b.hints.show(b, b.hint)
-}
-
-// MouseOut implements desktop.Hoverable.
-func (b *Button) MouseOut() {
-	b.Button.MouseOut()
-	b.hints.hide()
-}
-
-// Tapped implements fyne.Tappable.
-func (b *Button) Tapped(e *fyne.PointEvent) {
-	b.hints.hide()
-	b.Button.Tapped(e)
-}
-
 // Check is a check box with a hint.
 type Check struct {
 	widget.Check

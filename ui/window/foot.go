@@ -20,7 +20,7 @@ type foot struct {
 	w     *Window
 	box   *fyne.Container
 	panel *view.Panel
-	stop  *view.Button
+	stop  *view.Chip
 	timer *time.Timer
 }
 
@@ -33,7 +33,7 @@ func newFoot(w *Window) *foot {
 		Click: func(view.Pointer) { w.showLimits() },
 		Key:   w.key, Rune: w.rune,
 	})
-	f.stop = view.NewButton(w.hints, "Stop", "stop what is being computed (Escape)", w.stopOrResume)
+	f.stop = view.NewChip(w.hints, "Stop", "stop what is being computed (Escape)", w.stopOrResume)
 	f.stop.Hide()
 	f.box = container.NewBorder(nil, nil, nil, container.NewCenter(f.stop), f.panel)
 	return f
@@ -62,9 +62,7 @@ func (f *foot) show() {
 	if sn.Stopped {
 		label = "Go on"
 	}
-	if f.stop.Text != label {
-		f.stop.SetText(label)
-	}
+	f.stop.Put(label, "stop what is being computed, or go on (Escape)", f.w.stopOrResume)
 	if on := len(s.Running) > 0 || sn.Stopped; on != f.stop.Visible() {
 		if on {
 			f.stop.Show()

@@ -27,9 +27,9 @@ type header struct {
 	orbit   *view.Check
 	slider  *view.Slider
 	entry   *widget.Entry
-	chips   []*view.Button
-	other   *view.Button // path or Ledger, in a narrow window
-	find    *view.Button
+	chips   []*view.Chip
+	other   *view.Chip // path or Ledger, in a narrow window
+	find    *view.Chip
 	cards   []*canvas.Rectangle
 
 	crystals []crystalChoice
@@ -97,19 +97,19 @@ func newHeader(w *Window) *header {
 		w.do(session.SetLatticeConstant{A: a})
 	}
 	for range mostChips {
-		h.chips = append(h.chips, view.NewButton(w.hints, "", "", nil))
+		h.chips = append(h.chips, view.NewChip(w.hints, "", "", nil))
 	}
-	h.other = view.NewButton(w.hints, "Path", "the path in place of the Ledger (Y)", w.swapLower)
+	h.other = view.NewChip(w.hints, "Path", "the path in place of the Ledger (Y)", w.swapLower)
 	h.other.Hide()
-	h.find = view.NewButton(w.hints, "Find a command  /", "all commands with their keys", w.showPalette)
+	h.find = view.NewChip(w.hints, "Find a command  /", "all commands with their keys", w.showPalette)
 
 	wide := func(o fyne.CanvasObject, width float32) fyne.CanvasObject {
 		return container.New(layout.NewGridWrapLayout(fyne.NewSize(width, 32)), o)
 	}
 	row := []fyne.CanvasObject{
-		wide(h.crystal, 158), wide(h.set, 214), h.orbit,
+		wide(h.crystal, 142), wide(h.set, 200), h.orbit,
 		widget.NewLabelWithStyle("a", fyne.TextAlignTrailing, fyne.TextStyle{Italic: true}),
-		wide(h.slider, 150), wide(h.entry, 78), widget.NewLabel("Å"),
+		wide(h.slider, 130), wide(h.entry, 74), widget.NewLabel("Å"),
 	}
 	for _, c := range h.chips {
 		row = append(row, c)
@@ -191,19 +191,11 @@ func (h *header) show() {
 			continue
 		}
 		c := chips[i]
-		if b.Text != c.Text {
-			b.SetText(c.Text)
-		}
-		b.SetHint(c.Hint)
-		b.Importance = widget.LowImportance
+		var tapped func()
 		if c.Goes {
-			b.Importance = widget.MediumImportance
+			tapped = func() { h.w.do(session.Hold{K: c.K, Level: c.Level}) }
 		}
-		b.OnTapped = func() {
-			if c.Goes {
-				h.w.do(session.Hold{K: c.K, Level: c.Level})
-			}
-		}
+		b.Put(c.Text, c.Hint, tapped)
 		b.Show()
 	}
 	h.box.Refresh()

@@ -24,7 +24,7 @@ type pathEditor struct {
 	box   *fyne.Container
 	text  *widget.Entry
 	frame *view.Select
-	pick  *view.Button
+	pick  *view.Chip
 	error *canvas.Text
 	shown string // the path as it was last put into the entry
 }
@@ -44,13 +44,13 @@ func newPathEditor(w *Window) *pathEditor {
 			}
 		}
 	})
-	e.pick = view.NewButton(w.hints, "Pick in Zone", "clicks in the Zone add points at the end of the path (N)", w.togglePicking)
+	e.pick = view.NewChip(w.hints, "Pick in Zone", "clicks in the Zone add points at the end of the path (N)", w.togglePicking)
 	e.error.TextSize = theme.Size(theme.SizeNameCaptionText)
 	e.error.Hide()
 	buttons := container.New(&view.Flow{Gap: 4},
 		e.frame, e.pick,
-		view.NewButton(w.hints, "Standard", "the standard path of this lattice", func() { w.do(session.SetPath{}) }),
-		view.NewButton(w.hints, "Reverse", "walk the path the other way", func() {
+		view.NewChip(w.hints, "Standard", "the standard path of this lattice", func() { w.do(session.SetPath{}) }),
+		view.NewChip(w.hints, "Reverse", "walk the path the other way", func() {
 			if w.sn.Built != nil {
 				w.setPath(present.Reversed(w.sn.Built.Path))
 			}
@@ -64,13 +64,7 @@ func newPathEditor(w *Window) *pathEditor {
 func (e *pathEditor) show() {
 	sn := e.w.sn
 	e.frame.Put(e.frame.Options, present.FrameName(sn.Doc.View.Frame))
-	label := "Pick in Zone"
-	if e.w.picking {
-		label = "Stop picking"
-	}
-	if e.pick.Text != label {
-		e.pick.SetText(label)
-	}
+	e.pick.SetOn(e.w.picking)
 	if sn.Built == nil {
 		return
 	}

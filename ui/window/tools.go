@@ -29,7 +29,7 @@ type tools struct {
 	term   *view.Select
 	factor *view.Slider
 	value  *widget.Label
-	reset  *view.Button
+	reset  *view.Chip
 	key    string // of the chosen term
 }
 
@@ -43,13 +43,10 @@ var colourings = []colouring{
 
 func newTools(w *Window) *tools {
 	t := &tools{w: w}
-	side := func(label, hint string, direction, up [3]float64) *view.Button {
-		b := view.NewButton(w.hints, label, hint, func() { w.lookAlong(direction, up) })
-		b.Importance = widget.LowImportance
-		return b
+	side := func(label, hint string, direction, up [3]float64) *view.Chip {
+		return view.NewChip(w.hints, label, hint, func() { w.lookAlong(direction, up) })
 	}
-	home := view.NewButton(w.hints, "reset", "the usual side and size (0)", w.usualSide)
-	home.Importance = widget.LowImportance
+	home := view.NewChip(w.hints, "reset", "the usual side and size (0)", w.usualSide)
 	t.wedge = view.NewCheck(w.hints, "wedge", "the irreducible wedge (W)", func(bool) { w.toggleWedge() })
 	t.depth = view.NewSlider(w.hints, "how deep a click inside the zone goes: 0 is the near side ([ and ], or Ctrl and wheel)", 0, 1, 0.01,
 		func(d float64) { w.setDepth(d) }, nil)
@@ -82,16 +79,16 @@ func newTools(w *Window) *tools {
 	t.factor = view.NewSlider(w.hints, "the factor of the chosen term, 0 to 2; 1 is as published", 0, 2, 0.01,
 		func(f float64) { t.scale(f, true) }, func(f float64) { t.scale(f, false) })
 	t.value = widget.NewLabel("×1.00")
-	t.reset = view.NewButton(w.hints, "As published", "take all factors away", func() { w.do(session.ClearFactors{}) })
+	t.reset = view.NewChip(w.hints, "As published", "", nil)
 	sized := func(o fyne.CanvasObject, width float32) fyne.CanvasObject {
 		return container.New(layout.NewGridWrapLayout(fyne.NewSize(width, 30)), o)
 	}
 	t.factors = container.NewPadded(container.New(&view.Flow{Gap: 5},
 		sized(t.term, 190), sized(t.factor, 130), t.value, t.reset,
-		view.NewButton(w.hints, "Pin A", "keep the focused level as A (A)", func() { w.pin('A') }),
-		view.NewButton(w.hints, "Pin B", "keep the focused level as B: the Contrast shows B − A (B)", func() { w.pin('B') }),
-		view.NewButton(w.hints, "Clear pins", "let both pinned levels go (Delete)", w.clearPins),
-		view.NewButton(w.hints, "Copy", "copy Ledger and Contrast as text (Ctrl+C)", w.copyLedger),
+		view.NewChip(w.hints, "Pin A", "keep the focused level as A (A)", func() { w.pin('A') }),
+		view.NewChip(w.hints, "Pin B", "keep the focused level as B: the Contrast shows B − A (B)", func() { w.pin('B') }),
+		view.NewChip(w.hints, "Clear pins", "let both pinned levels go (Delete)", w.clearPins),
+		view.NewChip(w.hints, "Copy", "copy Ledger and Contrast as text (Ctrl+C)", w.copyLedger),
 	))
 	return t
 }
@@ -199,9 +196,9 @@ func (t *tools) show() {
 		t.value.SetText(text)
 	}
 	if len(sn.Doc.Model.Factors) == 0 {
-		t.reset.Disable()
+		t.reset.Put(t.reset.Text(), "all terms are as published", nil)
 	} else {
-		t.reset.Enable()
+		t.reset.Put(t.reset.Text(), "take all factors away", func() { t.w.do(session.ClearFactors{}) })
 	}
 }
 
@@ -262,11 +259,9 @@ func (w *Window) toggleDOS() {
 func (w *Window) swapLower() {
 	w.desk.showPath = !w.desk.showPath
 	if w.desk.showPath {
-		w.header.other.SetText("Ledger")
-		w.header.other.SetHint("the Ledger in place of the path (Y)")
+		w.header.other.Put("Ledger", "the Ledger in place of the path (Y)", w.swapLower)
 	} else {
-		w.header.other.SetText("Path")
-		w.header.other.SetHint("the path in place of the Ledger (Y)")
+		w.header.other.Put("Path", "the path in place of the Ledger (Y)", w.swapLower)
 	}
 	w.deskBox.Refresh()
 }

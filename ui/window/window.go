@@ -9,6 +9,7 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/theme"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -159,7 +160,7 @@ func (w *Window) build() {
 		back.StrokeColor = theme.Color(theme.ColorNameSeparator)
 		back.StrokeWidth = 1
 		w.header.cards = append(w.header.cards, back)
-		return container.NewStack(back, content)
+		return container.NewStack(back, container.New(layout.NewCustomPaddedLayout(1, 1, 1, 1), content))
 	}
 	w.desk = &desk{
 		header: w.header.box, foot: w.foot.box,
