@@ -1,7 +1,6 @@
 package main
 
 import (
-	"errors"
 	"fmt"
 	"io"
 	"math"
@@ -76,25 +75,11 @@ func (s *study) points(text, frame string) ([]lattice.FracK, error) {
 		if one == "" {
 			continue
 		}
-		// Γ completes the point to what the grammar of paths reads.
-		p, err := path.Parse([]string{one + " 0 0 0"}, f, s.Crystal.Setting)
+		p, err := path.ParsePoint(one, f, s.Crystal.Setting)
 		if err != nil {
-			var pe *path.Error
-			if errors.As(err, &pe) {
-				return nil, fmt.Errorf("--at, point %d (%s): %s; %s", i+1, one, pe.Problem, pe.Remedy)
-			}
 			return nil, fmt.Errorf("--at, point %d (%s): %w", i+1, one, err)
 		}
-		if len(p.Runs) != 1 || len(p.Runs[0]) != 2 {
-			return nil, fmt.Errorf("--at, point %d: %q is more than one k point; separate points by ;", i+1, one)
-		}
-		k := p.Runs[0][0].K
-		for _, x := range k {
-			if math.IsNaN(x) || math.IsInf(x, 0) {
-				return nil, fmt.Errorf("--at, point %d (%s) is not finite; give three numbers", i+1, one)
-			}
-		}
-		list = append(list, k)
+		list = append(list, p.K)
 	}
 	if len(list) == 0 {
 		return nil, &usageError{"--at names no k point: give --at \"0.5 0.5 0.5; 0 0 0\""}

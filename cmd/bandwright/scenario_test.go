@@ -34,9 +34,9 @@ func TestWindowScenario(t *testing.T) {
 	// Turn the zone.
 	before := w.look("zone")
 	w.drag(w.in("zone", 0.5, 0.5), w.in("zone", 0.7, 0.42), 12)
-	turned := w.settled()
-	if turned.Camera == s.Camera || changed(before, w.look("zone")) < 0.01 {
-		t.Errorf("a drag did not turn the zone: camera %v", turned.Camera)
+	turned := w.wait("the zone to turn", patience, func(now state) bool { return now.Camera != s.Camera && !now.Busy })
+	if changed(before, w.look("zone")) < 0.01 {
+		t.Error("a drag did not change the picture of the zone")
 	}
 	if turned.UndoDepth != s.UndoDepth {
 		t.Errorf("turning the zone made %d steps of undo", turned.UndoDepth-s.UndoDepth)

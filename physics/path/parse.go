@@ -23,8 +23,11 @@ type Error struct {
 
 func (e *Error) Error() string {
 	where := "path"
-	if e.Leg >= 0 {
+	switch {
+	case e.Leg >= 0:
 		where = fmt.Sprintf("leg %d", e.Leg+1)
+	case e.Text != "":
+		return e.Problem + "; " + e.Remedy
 	}
 	if e.Item > 0 {
 		where += fmt.Sprintf(", point %d (%s)", e.Item, e.Text)
@@ -97,24 +100,9 @@ func read(items []item, frame lattice.Frame, s lattice.Setting, names names) ([]
 		fault := func(problem, remedy string) *Error {
 			return &Error{Item: count, Offset: it.offset, Text: it.text, Problem: problem, Remedy: remedy}
 		}
-		var point Point
-		if it.numeric {
-			k := s.ToFrac(frame, it.numbers)
-			for _, x := range k {
-				if math.IsNaN(x) || math.IsInf(x, 0) {
-					return nil, fault("the point is not finite in this frame", "give three finite numbers")
-				}
-			}
-			point = Point{Label: names.label(k, it.numbers), K: k}
-		} else {
-			k, ok := names.find(it.text)
-			switch {
-			case !ok && names.err != nil:
-				return nil, fault(fmt.Sprintf("no special points are known here (%v)", names.err), "give the point as three numbers")
-			case !ok:
-				return nil, fault(fmt.Sprintf("%s is not a special point of this lattice (%s)", it.text, s.Bravais), "those are "+names.list()+"; any other point can be given as three numbers")
-			}
-			point = Point{Label: names.typographic(it.text), K: k}
+		point, problem, remedy := resolve(it, frame, s, names)
+		if problem != "" {
+			return nil, fault(problem, remedy)
 		}
 		if len(run) > 0 && distance(run[len(run)-1].K, point.K) < sameK {
 			return nil, fault("the point is the same as the one before it", "remove one of the two, or put | between them")
@@ -128,6 +116,47 @@ func read(items []item, frame lattice.Frame, s lattice.Setting, names names) ([]
 		return nil, err
 	}
 	return runs, nil
+}
+
+// resolve finds the k point of an item that is no break; a problem that is not
+// empty says why there is none.
+func resolve(it item, frame lattice.Frame, s lattice.Setting, names names) (p Point, problem, remedy string) {
+	if it.numeric {
+		k := s.ToFrac(frame, it.numbers)
+		for _, x := range k {
+			if math.IsNaN(x) || math.IsInf(x, 0) {
+				return Point{}, "the point is not finite in this frame", "give three finite numbers"
+			}
+		}
+		return Point{Label: names.label(k, it.numbers), K: k}, "", ""
+	}
+	k, ok := names.find(it.text)
+	switch {
+	case !ok && names.err != nil:
+		return Point{}, fmt.Sprintf("no special points are known here (%v)", names.err), "give the point as three numbers"
+	case !ok:
+		return Point{}, fmt.Sprintf("%s is not a special point of this lattice (%s)", it.text, s.Bravais),
+			"those are " + names.list() + "; any other point can be given as three numbers"
+	}
+	return Point{Label: names.typographic(it.text), K: k}, "", ""
+}
+
+// ParsePoint reads a single point: a name, or three numbers in the frame. The
+// error is an *Error.
+func ParsePoint(text string, frame lattice.Frame, s lattice.Setting) (Point, error) {
+	items, perr := split(text)
+	if perr != nil {
+		perr.Leg = -1
+		return Point{}, perr
+	}
+	if len(items) != 1 || items[0].breaks {
+		return Point{}, &Error{Leg: -1, Text: text, Problem: fmt.Sprintf("%q is not one point", text), Remedy: "give a name, or three numbers"}
+	}
+	p, problem, remedy := resolve(items[0], frame, s, newNames(s))
+	if problem != "" {
+		return Point{}, &Error{Leg: -1, Item: 1, Text: items[0].text, Problem: problem, Remedy: remedy}
+	}
+	return p, nil
 }
 
 // split cuts the text of a leg into points and breaks and gathers numbers in

@@ -11,7 +11,6 @@ import (
 	"bandwright/physics/crystal"
 	"bandwright/physics/hamiltonian"
 	"bandwright/physics/lattice"
-	"bandwright/physics/symmetry"
 	"bandwright/ui/doc"
 )
 
@@ -113,8 +112,21 @@ func (e UseSet) apply(_ *Session, d doc.Document) (doc.Document, drag, error) {
 func useSet(d doc.Document, set *catalog.Set, c doc.Crystal, m doc.Model) doc.Document {
 	d = withCrystal(d, c)
 	m.SpinOrbit = d.Model.SpinOrbit && lacksSpinOrbit(set, c) == ""
+	if givenTitle(d) {
+		d.Title = set.Title
+	}
 	d.Model = m
 	return d
+}
+
+// givenTitle reports whether the title is the one that the study was given with
+// its set, and not one that the user has typed.
+func givenTitle(d doc.Document) bool {
+	if d.Title == "" || d.Title == doc.New().Title {
+		return true
+	}
+	own, err := doc.ForSet(d.Model.Set)
+	return err == nil && d.Title == own.Title
 }
 
 // withCrystal returns d with another crystal; the path goes back to the
@@ -243,7 +255,7 @@ func (e SetFactor) apply(s *Session, d doc.Document) (doc.Document, drag, error)
 	if !(e.Value >= 0 && e.Value <= 2) {
 		return d, drag{}, fmt.Errorf("the factor of %s is %g: give a number from 0 to 2", e.Term, e.Value)
 	}
-	if s.core != nil && !knownTerm(s.core.built.Model, e.Term) {
+	if s.current() && !knownTerm(s.core.built.Model, e.Term) {
 		return d, drag{}, fmt.Errorf("the model has no term %q", e.Term)
 	}
 	factors := maps.Clone(d.Model.Factors)
@@ -299,15 +311,10 @@ func (e SetPath) apply(s *Session, d doc.Document) (doc.Document, drag, error) {
 }
 
 func (e SetMesh) apply(_ *Session, d doc.Document) (doc.Document, drag, error) {
-	product := 1
 	for _, n := range e.Divisions {
 		if n < 1 || n > maxDivisions {
 			return d, drag{}, fmt.Errorf("the mesh has %d divisions: give 1 to %d along each vector", n, maxDivisions)
 		}
-		product *= n
-	}
-	if product > symmetry.MaxMesh {
-		return d, drag{}, fmt.Errorf("the mesh has %d points: give fewer divisions", product)
 	}
 	d.Mesh = e.Divisions
 	return d, drag{}, nil

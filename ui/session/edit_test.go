@@ -39,6 +39,15 @@ func TestUseSet(t *testing.T) {
 	if snap.HeldLabel != "L" || snap.Edges.CBM.Valleys != 4 {
 		t.Errorf("held %q, edge %s", snap.HeldLabel, snap.Edges.CBM)
 	}
+	if snap.Doc.Title != set.Title {
+		t.Errorf("the title is still %q", snap.Doc.Title)
+	}
+	do(t, s, SetTitle{"My own"})
+	do(t, s, UseSet{"vogl1983/Sn"})
+	if title := s.Snapshot().Doc.Title; title != "My own" {
+		t.Errorf("a typed title became %q", title)
+	}
+	do(t, s, UseSet{"vogl1983/Ge"})
 	if err := s.Do(UseSet{"nobody/Xx"}); err == nil || s.Snapshot().Doc.Model.Set != "vogl1983/Ge" {
 		t.Error("an unknown set is taken:", err)
 	}

@@ -35,9 +35,13 @@ func TestExamples(t *testing.T) {
 			t.Errorf("%s is not written as the program writes it", e.Name)
 		}
 		s, l := start(t, e.Document)
+		if testing.Short() { // without densities and edges
+			previewed(t, s, l)
+			s.Stop()
+		}
 		snap := settle(t, s, l)
 		check(t, snap)
-		if snap.BuildErr != nil || snap.BandsErr != nil || snap.DOSErr != nil || snap.EdgesErr != nil {
+		if snap.BuildErr != nil || snap.BandsErr != nil || !snap.Stopped && (snap.DOSErr != nil || snap.EdgesErr != nil) {
 			t.Errorf("%s: %v, %v, %v, %v", e.Name, snap.BuildErr, snap.BandsErr, snap.DOSErr, snap.EdgesErr)
 		}
 		if !snap.Doc.Equal(e.Document) || snap.Modified {
@@ -72,9 +76,6 @@ func TestExamples(t *testing.T) {
 			t.Errorf("%s: weight of s %.3f, net bond energy %.3f: not an antibonding s level", pin.Name, s, pin.Entry.NetBond)
 		}
 	}
-	if k := solved["grey-tin-without-gap"].Edges.Kind; k != edges.Semimetal {
-		t.Errorf("grey tin is %s", k)
-	}
 	// Δ₀ = 0.340 eV (J.-M. Jancu et al. 1998).
 	near(t, "spin–orbit splitting of GaAs", difference("gallium-arsenide-emitter"), 0.340, 5e-4)
 	// A free p shell splits by Δ; in lead Δ = 1.37 eV by the set. Both levels are pure p at Γ.
@@ -83,14 +84,6 @@ func TestExamples(t *testing.T) {
 	near(t, "InSb against GaAs", difference("indium-antimonide-detector"), 0.23-1.55, 1e-3)
 	near(t, "X against Γ in AlAs", difference("aluminium-arsenide-barrier"), 2.30-3.04, 1e-3)
 	near(t, "gap of Si", difference("silicon-absorber"), 1.1713, 5e-5)
-	if e := solved["germanium-bottom-cell"].Edges; e.CBM.Where != "L" || e.CBM.Valleys != 4 {
-		t.Errorf("germanium: %s", e.CBM)
-	}
-	for _, name := range []string{"aluminium-conductor", "lead-spin-orbit"} {
-		if k := solved[name].Edges.Kind; k != edges.Metal {
-			t.Errorf("%s is %s", name, k)
-		}
-	}
 	// The differences add up term by term.
 	for name, s := range solved {
 		sum := 0.0
@@ -101,6 +94,20 @@ func TestExamples(t *testing.T) {
 		}
 		if s.PinA != nil {
 			near(t, name+": sum of the contrast", sum, difference(name), 2*ledger.SumTolerance)
+		}
+	}
+	if testing.Short() {
+		return
+	}
+	if k := solved["grey-tin-without-gap"].Edges.Kind; k != edges.Semimetal {
+		t.Errorf("grey tin is %s", k)
+	}
+	if e := solved["germanium-bottom-cell"].Edges; e.CBM.Where != "L" || e.CBM.Valleys != 4 {
+		t.Errorf("germanium: %s", e.CBM)
+	}
+	for _, name := range []string{"aluminium-conductor", "lead-spin-orbit"} {
+		if k := solved[name].Edges.Kind; k != edges.Metal {
+			t.Errorf("%s is %s", name, k)
 		}
 	}
 }

@@ -89,9 +89,9 @@ var dragSets = []struct {
 	{"boykin2004/Si", true},
 }
 
-// TestDragLatency checks that bands follow a dragged lattice constant within
+// TestPeerDrag checks that bands follow a dragged lattice constant within
 // a frame, beside computing everything anew.
-func TestDragLatency(t *testing.T) {
+func TestPeerDrag(t *testing.T) {
 	if os.Getenv("BANDWRIGHT_BENCH") != "1" {
 		t.Skip("set BANDWRIGHT_BENCH=1 to measure")
 	}

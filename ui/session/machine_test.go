@@ -1,7 +1,6 @@
 package session
 
 import (
-	"flag"
 	"fmt"
 	"testing"
 
@@ -15,10 +14,6 @@ import (
 // results arrive in between as they may, and checks every snapshot. At the end
 // undoing everything must give the document of the beginning.
 func TestRandomEdits(t *testing.T) {
-	if testing.Short() {
-		defer flag.Set("rapid.checks", flag.Lookup("rapid.checks").Value.String())
-		flag.Set("rapid.checks", "10")
-	}
 	sets := []string{"vogl1983/Si", "vogl1983/GaAs", "vogl1983/Sn", "chadi-cohen1975/Ge", "fitted/Al-sp"}
 	rapid.Check(t, func(t *rapid.T) {
 		l := newLoop()

@@ -209,7 +209,7 @@ func (c *costs) points(levels int, limit time.Duration) int {
 	if !known {
 		// A cautious guess before the first measurement; solving grows with
 		// the third power.
-		per = max(time.Microsecond, time.Duration(levels*levels*levels)*10*time.Nanosecond)
+		per = max(time.Microsecond, time.Duration(levels*levels*levels)*3*time.Nanosecond)
 	}
 	return int(limit / per)
 }

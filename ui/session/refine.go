@@ -84,7 +84,7 @@ func (s *Session) nextStep() refineKey {
 	return refineKey{}
 }
 
-// job returns the computation of a step.
+// refineJob returns the computation of a step.
 func (s *Session) refineJob(id int, key refineKey) task.Job[*refined] {
 	c, density := s.core, s.density
 	return func(ctx context.Context, report task.Report) (*refined, error) {

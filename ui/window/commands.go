@@ -6,7 +6,6 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/driver/desktop"
 
-	"bandwright/physics/lattice"
 	"bandwright/ui/present"
 	"bandwright/ui/session"
 )
@@ -280,9 +279,4 @@ func (w *Window) toggleTheme() {
 	} else {
 		w.setTheme("dark")
 	}
-}
-
-// parsePoint reads a typed k point: a label or three numbers in a frame.
-func (w *Window) parsePoint(text string) (lattice.FracK, error) {
-	return parsePoint(text, w.sn.Doc.View.Frame, w.sn.Built.Crystal.Setting)
 }

@@ -253,11 +253,11 @@ func (w *Window) askPoint() {
 	entry := widget.NewEntry()
 	entry.PlaceHolder = "L, or 0.5 0.25 0.75"
 	w.ask("Hold a k point", "Hold", "k in "+frameWords(w.sn.Doc.View.Frame), entry, func() error {
-		k, err := w.parsePoint(entry.Text)
+		p, err := path.ParsePoint(entry.Text, w.sn.Doc.View.Frame, w.sn.Built.Crystal.Setting)
 		if err != nil {
 			return err
 		}
-		return w.session.Do(session.Hold{K: k, Level: session.NearestEnergy})
+		return w.session.Do(session.Hold{K: p.K, Level: session.NearestEnergy})
 	})
 }
 
@@ -271,23 +271,6 @@ func frameWords(f lattice.Frame) string {
 		return "units of 2π/a"
 	}
 	return "Å⁻¹"
-}
-
-// parsePoint reads a label or three numbers. A path of two points is the
-// grammar that there is; Γ serves as the other one.
-func parsePoint(text string, f lattice.Frame, s lattice.Setting) (lattice.FracK, error) {
-	text = strings.TrimSpace(text)
-	if text == "" || strings.Contains(text, "|") {
-		return lattice.FracK{}, errors.New("type one k point: a label such as L, or three numbers")
-	}
-	p, err := path.Parse([]string{text + " 0 0 0"}, f, s)
-	if err != nil {
-		return lattice.FracK{}, err
-	}
-	if len(p.Runs) != 1 || len(p.Runs[0]) != 2 {
-		return lattice.FracK{}, fmt.Errorf("%q is more than one k point: type a label or three numbers", text)
-	}
-	return p.Runs[0][0].K, nil
 }
 
 func (w *Window) hold(k lattice.FracK) {
