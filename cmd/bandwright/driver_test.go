@@ -172,6 +172,8 @@ func (w *window) wait(what string, limit time.Duration, fits func(state) bool) s
 func (w *window) settled() state {
 	w.t.Helper()
 	time.Sleep(100 * time.Millisecond) // so that the last event has been taken in
+	w.wait("rest", 60*time.Second, func(s state) bool { return s.ready() })
+	time.Sleep(200 * time.Millisecond) // for the finished pictures to reach the display
 	return w.wait("rest", 60*time.Second, func(s state) bool { return s.ready() })
 }
 
@@ -313,7 +315,13 @@ func colours(p *image.RGBA) int {
 // close ends the program as its user would and checks that it went well.
 func (w *window) close() {
 	w.t.Helper()
+	w.settled()
 	w.key("ctrl+q")
+	if w.log.last.Modified {
+		// The question about unsaved changes: go on without saving.
+		time.Sleep(400 * time.Millisecond)
+		w.key("Tab", "Tab", "space")
+	}
 	select {
 	case <-w.exited:
 	case <-time.After(20 * time.Second):

@@ -46,6 +46,7 @@ func TestWindowScenario(t *testing.T) {
 	w.click(w.point("L"))
 	held := w.wait("L to be held", patience, func(s state) bool { return s.HeldLabel == "L" })
 	w.sums(held)
+	w.settled()
 	w.shot("2-L-held")
 
 	// Hold the conduction edge, by its key.
@@ -73,6 +74,7 @@ func TestWindowScenario(t *testing.T) {
 	}
 	w.key("b")
 	both := w.wait("the Contrast", patience, func(s state) bool { return s.PinB != "" && s.Contrast > 0 && !s.Busy })
+	w.settled()
 	w.shot("3-contrast")
 
 	// Drag the lattice constant: one step of undo, however many motions.
@@ -82,6 +84,7 @@ func TestWindowScenario(t *testing.T) {
 	if dragged.UndoDepth != both.UndoDepth+1 {
 		t.Errorf("the drag made %d steps of undo, not one", dragged.UndoDepth-both.UndoDepth)
 	}
+	w.settled()
 	w.shot("4-dragged")
 	w.key("ctrl+z")
 	undone := w.wait("undo", patience, func(s state) bool { return near(s.A, tin.A, 1e-9) && !s.Busy })

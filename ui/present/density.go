@@ -91,7 +91,7 @@ func DOS(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 		}
 	})
 	plot.YTicks(s.Picture, energyTicks(plot.Y, zero), style)
-	plot.XAxis(s.Picture, chart.Ticks(plot.X.Lo, plot.X.Hi, max(1, int(plot.Rect.W()/44))), style)
+	plot.XAxis(s.Picture, chart.Ticks(plot.X.Lo, plot.X.Hi, max(2, int(plot.Rect.W()/40))), style)
 	plot.Frame(s.Picture, style)
 	note := number(sn.DOS.Electrons, 0) + " electrons"
 	colour := t.Soft

@@ -38,13 +38,13 @@ func Chips(sn *session.Snapshot) []Chip {
 	}
 	switch e.Kind {
 	case edges.Metal:
-		text := "metal · E_F " + number(e.Fermi, 3) + " eV"
+		text := "metal · Fermi level " + number(e.Fermi, 3) + " eV"
 		hint := "Fermi level in the model's own zero"
 		if sn.DOS != nil && !sn.DOSStale {
 			_, density := sn.DOS.Count(sn.DOS.FermiLevel)
-			text = "metal · E_F " + number(sn.DOS.FermiLevel, 3) + " eV"
+			text = "metal · Fermi level " + number(sn.DOS.FermiLevel, 3) + " eV"
 			atoms := float64(len(sn.Built.Crystal.Sites))
-			list = append(list, Chip{Text: "N(E_F) " + number(density/atoms, 3) + " eV⁻¹ atom⁻¹", Hint: "density of states at the Fermi level, both spins"})
+			list = append(list, Chip{Text: number(density/atoms, 3) + " eV⁻¹ atom⁻¹ there", Hint: "density of states at the Fermi level, both spins"})
 			if low, _ := sn.DOS.Range(); true {
 				list = append(list, Chip{Text: "filled width " + number(sn.DOS.FermiLevel-low, 2) + " eV", Hint: "from the lowest level to the Fermi level"})
 			}

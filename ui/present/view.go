@@ -71,7 +71,7 @@ func Zero(sn *session.Snapshot) (zero float64, title string) {
 	if sn.Doc.View.Zero == "model" || !sn.FermiKnown {
 		return 0, "*E* (eV)"
 	}
-	if sn.Edges != nil && sn.Edges.VBM != nil {
+	if sn.Edges != nil && !sn.EdgesStale && sn.Edges.VBM != nil {
 		return sn.Edges.VBM.Energy, "*E* − *E*_{V} (eV)"
 	}
 	return sn.Fermi, "*E* − *E*_{F} (eV)"

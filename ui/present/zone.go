@@ -33,7 +33,7 @@ type zoneKey struct {
 
 // ZoneArea is the part of a Zone panel that shows the zone.
 func ZoneArea(w, h float64) picture.Rect {
-	return picture.Span(6, 30, max(7, w-6), max(31, h-44))
+	return picture.Span(8, 44, max(9, w-24), max(45, h-44))
 }
 
 // reach is how far the axes stick out of the zone.

@@ -101,15 +101,15 @@ func newHeader(w *Window) *header {
 	}
 	h.other = view.NewChip(w.hints, "Path", "the path in place of the Ledger (Y)", w.swapLower)
 	h.other.Hide()
-	h.find = view.NewChip(w.hints, "Find a command  /", "all commands with their keys", w.showPalette)
+	h.find = view.NewChip(w.hints, "Commands  /", "all commands with their keys", w.showPalette)
 
 	wide := func(o fyne.CanvasObject, width float32) fyne.CanvasObject {
 		return container.New(layout.NewGridWrapLayout(fyne.NewSize(width, 32)), o)
 	}
 	row := []fyne.CanvasObject{
-		wide(h.crystal, 142), wide(h.set, 200), h.orbit,
+		wide(h.crystal, 132), wide(h.set, 190), h.orbit,
 		widget.NewLabelWithStyle("a", fyne.TextAlignTrailing, fyne.TextStyle{Italic: true}),
-		wide(h.slider, 130), wide(h.entry, 74), widget.NewLabel("Å"),
+		wide(h.slider, 112), wide(h.entry, 70), widget.NewLabel("Å"),
 	}
 	for _, c := range h.chips {
 		row = append(row, c)
