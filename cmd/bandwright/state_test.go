@@ -23,6 +23,7 @@ type state struct {
 	Busy        bool       `json:"busy"`
 
 	Crystal  string           `json:"crystal"`
+	LagMS    float64          `json:"lag_ms"`
 	Fermi    float64          `json:"fermi"`
 	Contrast int              `json:"contrast"` // rows
 	Path     string           `json:"path"`

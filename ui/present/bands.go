@@ -136,14 +136,14 @@ func Bands(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 		if zero != 0 || sn.FermiKnown {
 			plot.Level(s.Picture, zero, zeroStroke(t))
 		}
-		s.bandCurves(sn, plot)
+		s.bandCurves(sn, v, plot)
 		s.bandMarks(sn, v, plot, zero)
 	})
 	s.Begin("axis")
 	plot.YAxis(s.Picture, ticks, title, style)
 	plot.Frame(s.Picture, style)
 	s.End()
-	used := s.bandLegend(sn, w)
+	used := s.bandLegend(sn, v, w)
 	s.bandNotes(sn, plot)
 	if g := v.Glance; g.On && g.OnPath || g.HasEnergy {
 		s.readout(sn, v, plot, zero, used)
@@ -159,7 +159,7 @@ func tickLabel(label string) string {
 	return typeset.Escape(label)
 }
 
-func (s *sheet) bandCurves(sn *session.Snapshot, plot chart.Plot) {
+func (s *sheet) bandCurves(sn *session.Snapshot, v *View, plot chart.Plot) {
 	t, b := s.t, sn.Bands
 	colour := sn.Doc.View.Colour
 	list := curvesOf(b)
@@ -197,7 +197,7 @@ func (s *sheet) bandCurves(sn *session.Snapshot, plot chart.Plot) {
 		if unreliable(sn, c.lowest) && unreliable(sn, c.highest) {
 			stroke.Color = mark.Fade(t.Ink, t.Panel, pale)
 		}
-		if sn.BandsStale {
+		if sn.BandsStale && v.Lagging {
 			stroke.Dash = picture.Dash{On: 5, Off: 2}
 		}
 		plot.Line(s.Picture, c.xs, c.ys, stroke, 0)
@@ -277,7 +277,7 @@ func bondingScale(b *bands.Bands) float64 {
 
 // bandLegend says what the widths mean, in the strip above the plot, and
 // returns where it ends.
-func (s *sheet) bandLegend(sn *session.Snapshot, w float64) (end float64) {
+func (s *sheet) bandLegend(sn *session.Snapshot, v *View, w float64) (end float64) {
 	t := s.t
 	y := PlotTop - 10
 	x := 58.0
@@ -314,10 +314,10 @@ func (s *sheet) bandLegend(sn *session.Snapshot, w float64) (end float64) {
 		}
 	}
 	switch {
-	case sn.BandsCoarse:
+	case sn.BandsCoarse && v.Lagging:
 		s.fitMiddle("preview", x, y, smallSize, t.Caution, w-x)
 		x += 50
-	case sn.BandsStale:
+	case sn.BandsStale && v.Lagging:
 		s.fitMiddle("not yet of this model", x, y, smallSize, t.Caution, w-x)
 		x += 120
 	}

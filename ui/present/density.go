@@ -95,7 +95,7 @@ func DOS(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 	plot.Frame(s.Picture, style)
 	note := number(sn.DOS.Electrons, 0) + " electrons"
 	colour := t.Soft
-	if sn.DOSStale {
+	if sn.DOSStale && v.Lagging {
 		note, colour = "not yet of this model", t.Caution
 	} else if bonding {
 		note = "bonding ◂ ▸ antibonding"

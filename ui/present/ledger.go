@@ -300,7 +300,7 @@ func (s *sheet) contrast(sn *session.Snapshot, r picture.Rect) float64 {
 	// Columns.
 	wide, largest := 80.0, 1e-6
 	for _, row := range sn.Contrast {
-		if row.Quantity.IsTerm() {
+		if row.Quantity.IsTerm() && !nothing(row) {
 			wide = max(wide, typeset.Plain(contrastName(sn, row), textSize, typeset.Style{}).Width)
 			largest = max(largest, math.Abs(row.Difference))
 		}
@@ -333,7 +333,7 @@ func (s *sheet) contrast(sn *session.Snapshot, r picture.Rect) float64 {
 	}
 	sumA, sumB := 0.0, 0.0
 	for _, row := range sn.Contrast {
-		if !row.Quantity.IsTerm() {
+		if !row.Quantity.IsTerm() || nothing(row) {
 			continue
 		}
 		sumA, sumB = sumA+row.A, sumB+row.B
@@ -355,7 +355,7 @@ func (s *sheet) contrast(sn *session.Snapshot, r picture.Rect) float64 {
 	s.bold(signed(sumB-sumA, 3), d, y, textSize, t.Ink, picture.Right|picture.Middle)
 	y += 8
 	for _, row := range sn.Contrast {
-		if row.Quantity != ledger.WeightOf && row.Quantity != ledger.BondingShare {
+		if row.Quantity != ledger.WeightOf && row.Quantity != ledger.BondingShare || nothing(row) {
 			continue
 		}
 		y += ledgerRow
@@ -375,6 +375,10 @@ func (s *sheet) contrast(sn *session.Snapshot, r picture.Rect) float64 {
 	}
 	return y + 10
 }
+
+// nothing says whether a row is zero on both sides: it takes no part in the
+// difference.
+func nothing(row ledger.ContrastRow) bool { return math.Abs(row.A) < 5e-7 && math.Abs(row.B) < 5e-7 }
 
 func contrastName(sn *session.Snapshot, row ledger.ContrastRow) string {
 	if row.Quantity == ledger.Bond {

@@ -16,10 +16,13 @@ type View struct {
 	Window [2]float64   // energies shown, eV in the model's zero; {0, 0}: automatic
 	Wedge  bool         // show the irreducible wedge
 	Depth  float64      // of a pick inside the zone: 0 is its near side, 1 its far side
-	Glance Glance
-	Scroll float64 // of the Ledger, points
-	Down   float64 // scroll of the path's points, points
-	Drag   DragRow // of a path point
+	// Lagging says that results have been out of date for long enough to say
+	// so: in a drag they always are for a moment.
+	Lagging bool
+	Glance  Glance
+	Scroll  float64 // of the Ledger, points
+	Down    float64 // scroll of the path's points, points
+	Drag    DragRow // of a path point
 }
 
 // Glance is the k point, and perhaps the level, that the pointer passes over.

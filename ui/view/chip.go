@@ -86,7 +86,7 @@ func (c *Chip) CreateRenderer() fyne.WidgetRenderer {
 type chipRenderer struct{ c *Chip }
 
 const (
-	chipSide = 8
+	chipSide = 6
 	chipTop  = 4
 )
 

@@ -58,6 +58,7 @@ type Panel struct {
 	widget.BaseWidget
 	handler Handler
 	minimum fyne.Size
+	drawn   func()
 	cursor  desktop.Cursor
 	nearest bool
 
@@ -104,6 +105,10 @@ func NewPanel(minimum fyne.Size, h Handler) *Panel {
 // PickNearest makes the panel report the nearest item within Reach instead of
 // the topmost one: right for crowded lines.
 func (p *Panel) PickNearest() { p.nearest = true }
+
+// OnDrawn has f called on the UI goroutine after each finished image is handed
+// to the screen.
+func (p *Panel) OnDrawn(f func()) { p.drawn = f }
 
 // SetCursor sets the shape of the pointer over the panel.
 func (p *Panel) SetCursor(c desktop.Cursor) { p.cursor = c }
@@ -200,7 +205,12 @@ func (p *Panel) work() {
 			p.busy = false
 		}
 		p.mu.Unlock()
-		fyne.Do(p.raster.Refresh)
+		fyne.Do(func() {
+			p.raster.Refresh()
+			if p.drawn != nil {
+				p.drawn()
+			}
+		})
 		if !again {
 			return
 		}

@@ -78,7 +78,9 @@ func (t *Theme) Color(n fyne.ThemeColorName, _ fyne.ThemeVariant) color.Color {
 		return c.Ink
 	case theme.ColorNameButton:
 		return c.Raised
-	case theme.ColorNameInputBackground, theme.ColorNameOverlayBackground, theme.ColorNameMenuBackground, theme.ColorNameHeaderBackground:
+	case theme.ColorNameInputBackground:
+		return faded(c.Ink, 16)
+	case theme.ColorNameOverlayBackground, theme.ColorNameMenuBackground, theme.ColorNameHeaderBackground:
 		return c.Panel
 	case theme.ColorNameInputBorder, theme.ColorNameSeparator:
 		return c.Rule

@@ -183,6 +183,9 @@ func shortcut(keys string) fyne.Shortcut {
 
 // press does what a key stands for.
 func (w *Window) press(keys string) bool {
+	if keys != "Escape" && w.win.Canvas().Overlays().Top() != nil {
+		return false // what is open comes first
+	}
 	c, ok := w.keys[keys]
 	if ok {
 		c.do()
@@ -223,6 +226,9 @@ func (w *Window) escape() {
 	switch {
 	case w.shown != nil:
 		w.shown.close()
+	case w.dialog != nil:
+		w.dialog.Hide()
+	case w.win.Canvas().Overlays().Top() != nil:
 	case w.picking:
 		w.togglePicking()
 	case len(w.sn.Progress) > 0 && !w.sn.Stopped:

@@ -71,7 +71,7 @@ func (w *Window) unlessUnsaved(question string, goOn func()) {
 		widget.NewButton("Go on without saving", func() { d.Hide(); goOn() }),
 		save,
 	})
-	d.Show()
+	w.show(d, 420, 120)
 }
 
 // showProblem shows an error with all its lines.
@@ -79,8 +79,7 @@ func (w *Window) showProblem(title string, err error) {
 	text := widget.NewLabel(err.Error())
 	text.Wrapping = fyne.TextWrapWord
 	d := dialog.NewCustom(title, "Close", text, w.win)
-	d.Resize(w.dialogSize(620, 200))
-	d.Show()
+	w.show(d, 620, 200)
 	w.fail(fmt.Errorf("%s: %w", title, err))
 }
 
@@ -146,8 +145,7 @@ func (w *Window) askSave(then func()) {
 		}
 		start = filepath.Join(w.prefs.folder(), name+studyEnding)
 	}
-	entry := widget.NewEntry()
-	entry.SetText(start)
+	entry := w.newLine(start)
 	w.ask("Save the study as", "Save", "File", entry, func() error {
 		file := strings.TrimSpace(entry.Text)
 		if file == "" {
@@ -182,7 +180,7 @@ func (w *Window) place(d *dialog.FileDialog) {
 
 // ask shows a dialog with one field. What stands against the answer is told in
 // the dialog, which stays open.
-func (w *Window) ask(title, confirm, label string, field *widget.Entry, answer func() error) {
+func (w *Window) ask(title, confirm, label string, field *line, answer func() error) {
 	problem := widget.NewLabel("")
 	problem.Importance = widget.DangerImportance
 	problem.Wrapping = fyne.TextWrapWord
@@ -209,22 +207,19 @@ func (w *Window) askForm(title, confirm string, form *widget.Form, problem *widg
 	yes := widget.NewButton(confirm, func() { w.confirm() })
 	yes.Importance = widget.HighImportance
 	d.SetButtons([]fyne.CanvasObject{widget.NewButton("Cancel", func() { d.Hide() }), yes})
-	d.Resize(w.dialogSize(560, 180))
-	d.Show()
+	w.show(d, 560, 180)
 }
 
 func (w *Window) askTitle() {
-	entry := widget.NewEntry()
-	entry.SetText(w.sn.Doc.Title)
+	entry := w.newLine(w.sn.Doc.Title)
 	w.ask("Title of the study", "Set", "Title", entry, func() error {
 		return w.session.Do(session.SetTitle{Title: strings.TrimSpace(entry.Text)})
 	})
 }
 
 func (w *Window) askMesh() {
-	entry := widget.NewEntry()
 	d := w.sn.Doc.Mesh
-	entry.SetText(fmt.Sprintf("%d %d %d", d[0], d[1], d[2]))
+	entry := w.newLine(fmt.Sprintf("%d %d %d", d[0], d[1], d[2]))
 	w.ask("Mesh of the zone", "Compute", "Divisions", entry, func() error {
 		fields := strings.Fields(strings.NewReplacer("×", " ", "x", " ", ",", " ").Replace(entry.Text))
 		if len(fields) == 1 {
@@ -250,7 +245,7 @@ func (w *Window) askPoint() {
 	if w.sn.Built == nil {
 		return
 	}
-	entry := widget.NewEntry()
+	entry := w.newLine("")
 	entry.PlaceHolder = "L, or 0.5 0.25 0.75"
 	w.ask("Hold a k point", "Hold", "k in "+frameWords(w.sn.Doc.View.Frame), entry, func() error {
 		p, err := path.ParsePoint(entry.Text, w.sn.Doc.View.Frame, w.sn.Built.Crystal.Setting)
@@ -286,10 +281,8 @@ func (w *Window) askCrystal() {
 	now := w.sn.Doc.Crystal
 	prototype := widget.NewSelect(names, nil)
 	prototype.SetSelected(now.Prototype)
-	elements := widget.NewEntry()
-	elements.SetText(strings.Join(now.Elements, " "))
-	a := widget.NewEntry()
-	a.SetText(strconv.FormatFloat(now.A, 'g', -1, 64))
+	elements := w.newLine(strings.Join(now.Elements, " "))
+	a := w.newLine(strconv.FormatFloat(now.A, 'g', -1, 64))
 	form := widget.NewForm(
 		widget.NewFormItem("Prototype", prototype),
 		widget.NewFormItem("Elements", elements),

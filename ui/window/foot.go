@@ -97,9 +97,41 @@ func (w *Window) showLimits() {
 	}
 	text := widget.NewLabel(b.String())
 	text.Wrapping = fyne.TextWrapWord
-	d := dialog.NewCustom("Sources and limits of this model", "Close", container.NewVScroll(text), w.win)
-	d.Resize(w.dialogSize(640, 460))
+	w.show(dialog.NewCustom("Sources and limits of this model", "Close", container.NewVScroll(text), w.win), 640, 460)
+}
+
+// show shows a dialog of a wished size; Escape closes it.
+func (w *Window) show(d *dialog.CustomDialog, width, height float32) {
+	w.dialog = d
+	d.SetOnClosed(func() {
+		if w.dialog == d {
+			w.dialog = nil
+		}
+	})
+	d.Resize(w.dialogSize(width, height))
 	d.Show()
+}
+
+// line is a field of a dialog: Escape closes the dialog from it.
+type line struct {
+	widget.Entry
+	w *Window
+}
+
+func (w *Window) newLine(text string) *line {
+	e := &line{w: w}
+	e.ExtendBaseWidget(e)
+	e.SetText(text)
+	return e
+}
+
+// TypedKey implements fyne.Focusable.
+func (e *line) TypedKey(k *fyne.KeyEvent) {
+	if k.Name == fyne.KeyEscape {
+		e.w.escape()
+		return
+	}
+	e.Entry.TypedKey(k)
 }
 
 // dialogSize is a wished size, bounded by the window.

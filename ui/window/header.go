@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"strconv"
 	"strings"
+	"time"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
@@ -86,7 +87,12 @@ func newHeader(w *Window) *header {
 		}
 	})
 	h.slider = view.NewSlider(w.hints, "drag the lattice constant: parameters follow d to the power of −η", 4, 7, 0.001,
-		func(a float64) { w.do(session.SetLatticeConstant{A: a, Dragging: true}) },
+		func(a float64) {
+			began := time.Now()
+			if w.do(session.SetLatticeConstant{A: a, Dragging: true}) {
+				w.lag.asked(w.session.Snapshot().Doc.Crystal.A, began)
+			}
+		},
 		func(a float64) { w.do(session.SetLatticeConstant{A: a}) })
 	h.entry.OnSubmitted = func(text string) {
 		a, err := strconv.ParseFloat(strings.Replace(strings.TrimSpace(text), ",", ".", 1), 64)
@@ -107,15 +113,15 @@ func newHeader(w *Window) *header {
 		return container.New(layout.NewGridWrapLayout(fyne.NewSize(width, 32)), o)
 	}
 	row := []fyne.CanvasObject{
-		wide(h.crystal, 132), wide(h.set, 190), h.orbit,
+		wide(h.crystal, 126), wide(h.set, 186), h.orbit,
 		widget.NewLabelWithStyle("a", fyne.TextAlignTrailing, fyne.TextStyle{Italic: true}),
-		wide(h.slider, 112), wide(h.entry, 70), widget.NewLabel("Å"),
+		wide(h.slider, 100), wide(h.entry, 66), widget.NewLabel("Å"),
 	}
 	for _, c := range h.chips {
 		row = append(row, c)
 	}
 	row = append(row, h.other, h.find)
-	h.box = container.New(&view.Flow{Gap: 5}, row...)
+	h.box = container.New(&view.Flow{Gap: 4}, row...)
 	return h
 }
 

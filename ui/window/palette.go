@@ -6,6 +6,7 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/dialog"
+	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
@@ -161,17 +162,20 @@ func (w *Window) showPalette() {
 
 // showKeys shows the sheet of keys and what the pointer does.
 func (w *Window) showKeys() {
-	columns := container.NewGridWithColumns(2)
+	left, right := container.NewVBox(), container.NewVBox()
 	for _, m := range menus {
-		box := container.NewVBox(widget.NewLabelWithStyle(m, fyne.TextAlignLeading, fyne.TextStyle{Bold: true}))
+		box := left
+		if m == menuView || m == menuGo {
+			box = right
+		}
+		box.Add(widget.NewLabelWithStyle(m, fyne.TextAlignLeading, fyne.TextStyle{Bold: true}))
 		for _, c := range w.command {
 			if c.menu == m && c.keys != "" {
 				box.Add(keyLine(shownKeys(c.keys), c.name))
 			}
 		}
-		columns.Add(box)
 	}
-	pointer := container.NewVBox(widget.NewLabelWithStyle("Pointer", fyne.TextAlignLeading, fyne.TextStyle{Bold: true}))
+	left.Add(widget.NewLabelWithStyle("Pointer", fyne.TextAlignLeading, fyne.TextStyle{Bold: true}))
 	for _, l := range [][2]string{
 		{"Zone: drag", "turn; with Shift move, with Ctrl roll"},
 		{"Zone: wheel", "magnify; with Ctrl choose the depth of a pick"},
@@ -185,17 +189,16 @@ func (w *Window) showKeys() {
 		{"Ledger: click a row", "choose the term to scale"},
 		{"Path: drag a row", "reorder; | breaks, × removes"},
 	} {
-		pointer.Add(keyLine(l[0], l[1]))
+		left.Add(keyLine(l[0], l[1]))
 	}
-	columns.Add(pointer)
-	d := dialog.NewCustom("Keys and pointer", "Close", container.NewVScroll(columns), w.win)
-	d.Resize(w.dialogSize(920, 640))
-	d.Show()
+	columns := container.NewGridWithColumns(2, left, right)
+	w.show(dialog.NewCustom("Keys and pointer", "Close", container.NewVScroll(columns), w.win), 980, 680)
 }
 
 func keyLine(key, does string) fyne.CanvasObject {
-	name := widget.NewRichText(&widget.TextSegment{Text: key, Style: widget.RichTextStyle{ColorName: theme.ColorNamePrimary, Inline: true, TextStyle: fyne.TextStyle{Bold: true}}},
+	line := widget.NewRichText(
+		&widget.TextSegment{Text: key, Style: widget.RichTextStyle{ColorName: theme.ColorNamePrimary, Inline: true, TextStyle: fyne.TextStyle{Bold: true}}},
 		&widget.TextSegment{Text: "   " + does, Style: widget.RichTextStyle{Inline: true}})
-	name.Truncation = fyne.TextTruncateEllipsis
-	return name
+	line.Truncation = fyne.TextTruncateEllipsis
+	return container.New(layout.NewCustomPaddedLayout(-4, -4, 0, 0), line)
 }

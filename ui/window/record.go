@@ -53,6 +53,7 @@ type state struct {
 	Notice      string           `json:"notice"`
 	Problem     string           `json:"problem"` // why the study is not computed
 	Busy        bool             `json:"busy"`
+	LagMS       float64          `json:"lag_ms"` // median time from a drag of the lattice constant to its bands
 	Drawings    map[string]int   `json:"drawings"`
 	Panels      map[string]place `json:"panels"`
 	Points      map[string]place `json:"points"` // special points as seen in the Zone
@@ -109,7 +110,7 @@ func (w *Window) state() state {
 		Held: sn.Doc.View.Held, HeldLabel: sn.HeldLabel,
 		Camera: sn.Doc.View.Camera, Window: w.v.Window, Colour: sn.Doc.View.Colour, Frame: sn.Doc.View.Frame.String(),
 		Revision: sn.Revision, UndoDepth: w.session.UndoDepth(), File: sn.File, Modified: sn.Modified,
-		Notice: w.notice, Busy: sn.Busy,
+		Notice: w.notice, Busy: sn.Busy, LagMS: float64(w.lag.median().Microseconds()) / 1000,
 	}
 	if sn.Doc.Model.File != "" {
 		s.Set = sn.Doc.Model.File

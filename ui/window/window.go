@@ -3,12 +3,16 @@ package window
 import (
 	"fmt"
 	"io"
+	"math"
 	"path/filepath"
 	"strings"
+	"sync/atomic"
+	"time"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/theme"
 
@@ -42,6 +46,9 @@ type Window struct {
 	v       present.View
 	prefs   *preferences
 	record  *recorder
+	lag     latency
+
+	bandsShown atomic.Uint64 // bits of the lattice constant of the bands drawn last
 
 	zonePicture present.ZonePanel
 	zone        *view.Panel
@@ -64,11 +71,13 @@ type Window struct {
 
 	scrub     scrub
 	turning   *fyne.Animation
-	dragging  bool    // a point of the path's list is being dragged
-	picking   bool    // clicks in the Zone add points to the path
-	confirm   func()  // takes the form that is open
-	ledgerEnd float64 // height of the Ledger's content
-	notice    string  // what just happened, or went wrong
+	soon      *time.Timer          // until results out of date are drawn as such
+	dragging  bool                 // a point of the path's list is being dragged
+	picking   bool                 // clicks in the Zone add points to the path
+	dialog    *dialog.CustomDialog // the one that is open
+	confirm   func()               // takes the form that is open
+	ledgerEnd float64              // height of the Ledger's content
+	notice    string               // what just happened, or went wrong
 	noticeBad bool
 }
 
@@ -145,6 +154,7 @@ func (w *Window) build() {
 	w.commands()
 	w.zone = view.NewPanel(fyne.NewSize(180, 160), w.zoneHandler())
 	w.bands = view.NewPanel(fyne.NewSize(200, 160), w.bandsHandler())
+	w.bands.OnDrawn(func() { w.lag.shown(math.Float64frombits(w.bandsShown.Load())) })
 	w.dos = view.NewPanel(fyne.NewSize(80, 160), w.dosHandler())
 	w.ladder = view.NewPanel(fyne.NewSize(180, 160), w.ladderHandler())
 	w.ledger = view.NewPanel(fyne.NewSize(200, 80), w.ledgerHandler())
@@ -156,7 +166,7 @@ func (w *Window) build() {
 	w.foot = newFoot(w)
 
 	card := func(content fyne.CanvasObject) fyne.CanvasObject {
-		back := canvas.NewRectangle(theme.Color(theme.ColorNameInputBackground))
+		back := canvas.NewRectangle(theme.Color(theme.ColorNameHeaderBackground))
 		back.StrokeColor = theme.Color(theme.ColorNameSeparator)
 		back.StrokeWidth = 1
 		w.header.cards = append(w.header.cards, back)
@@ -215,7 +225,34 @@ func (w *Window) changed(sn *session.Snapshot) {
 	w.editor.show()
 	w.tools.show()
 	w.foot.show()
+	if w.soon != nil {
+		w.soon.Stop()
+	}
+	w.v.Lagging = false
+	if sn.BandsStale || sn.DOSStale || sn.EdgesStale {
+		w.soon = time.AfterFunc(staleAfter, func() {
+			fyne.Do(func() {
+				w.v.Lagging = true
+				w.drawAll()
+			})
+		})
+		if underway(old, sn) {
+			// The new results will be here in a moment: drawing the old ones
+			// once more would only keep them waiting.
+			return
+		}
+	}
 	w.drawAll()
+}
+
+// staleAfter is how long results may be out of date before it shows.
+const staleAfter = 150 * time.Millisecond
+
+// underway says whether nothing to be drawn has changed but that the results
+// no longer belong to the study.
+func underway(old, sn *session.Snapshot) bool {
+	return old != nil && sn.BandsStale && sn.BuildErr == nil && sn.Bands == old.Bands && sn.Held == old.Held &&
+		sn.Edges == old.Edges && sn.Curve == old.Curve && sn.Doc.View == old.Doc.View && sn.PinA == old.PinA && sn.PinB == old.PinB
 }
 
 func (w *Window) title() {
@@ -255,7 +292,12 @@ func (w *Window) drawEnergies() {
 
 func (w *Window) drawBands() {
 	sn, v := w.sn, w.v
-	w.bands.SetDraw(func(width, height float64) *picture.Picture { return present.Bands(sn, &v, width, height) })
+	w.bands.SetDraw(func(width, height float64) *picture.Picture {
+		if sn.Built != nil {
+			w.bandsShown.Store(math.Float64bits(sn.Built.Crystal.Setting.A))
+		}
+		return present.Bands(sn, &v, width, height)
+	})
 }
 
 func (w *Window) drawLedger() {
@@ -309,7 +351,7 @@ func (w *Window) setTheme(name string) {
 	w.v.Theme = themeNamed(name)
 	w.app.Settings().SetTheme(&view.Theme{Colours: w.v.Theme})
 	for _, c := range w.header.cards {
-		c.FillColor = theme.Color(theme.ColorNameInputBackground)
+		c.FillColor = theme.Color(theme.ColorNameHeaderBackground)
 		c.StrokeColor = theme.Color(theme.ColorNameSeparator)
 		c.Refresh()
 	}
