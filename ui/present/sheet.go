@@ -34,6 +34,7 @@ type sheet struct {
 func newSheet(t *Theme, w, h float64, title, remark string) *sheet {
 	s := &sheet{picture.New(w, h), t}
 	s.FillRect(picture.R(0, 0, w, h), picture.Fill{Color: t.Panel, Crisp: true})
+	s.StrokeRect(picture.R(0.5, 0.5, w-1, h-1), picture.Stroke{Color: t.Rule, Width: 1, Crisp: true})
 	s.Begin("head")
 	head := typeset.Layout(title, titleSize, typeset.Style{Bold: true})
 	s.Text(head, edgePad, 21, picture.TextStyle{Color: t.Ink})

@@ -43,7 +43,7 @@ func (h *Hints) show(o fyne.CanvasObject, text string) {
 	h.hide()
 	turn := h.turn
 	h.timer = time.AfterFunc(hintDelay, func() {
-		fyne.Do(func() {
+		Post(func() {
 			if turn == h.turn {
 				h.place(o, text)
 			}

@@ -63,7 +63,7 @@ type Panel struct {
 	nearest bool
 
 	raster *canvas.Raster
-	ring   *canvas.Rectangle
+	ring   [4]*canvas.Rectangle // top, bottom, left, right: a hollow one would be painted whole
 
 	mu       sync.Mutex
 	draw     Draw
@@ -95,9 +95,10 @@ func NewPanel(minimum fyne.Size, h Handler) *Panel {
 	p := &Panel{handler: h, minimum: minimum, cursor: desktop.DefaultCursor}
 	p.raster = canvas.NewRaster(p.image)
 	p.raster.ScaleMode = canvas.ImageScalePixels
-	p.ring = canvas.NewRectangle(nil)
-	p.ring.StrokeWidth = 2
-	p.ring.Hide()
+	for i := range p.ring {
+		p.ring[i] = canvas.NewRectangle(nil)
+		p.ring[i].Hide()
+	}
 	p.ExtendBaseWidget(p)
 	return p
 }
@@ -205,7 +206,7 @@ func (p *Panel) work() {
 			p.busy = false
 		}
 		p.mu.Unlock()
-		fyne.Do(func() {
+		Post(func() {
 			p.raster.Refresh()
 			if p.drawn != nil {
 				p.drawn()
@@ -342,13 +343,15 @@ func (p *Panel) FocusGained() { p.focused = true; p.showRing() }
 func (p *Panel) FocusLost() { p.focused = false; p.showRing() }
 
 func (p *Panel) showRing() {
-	if p.focused {
-		p.ring.StrokeColor = ringColour()
-		p.ring.Show()
-	} else {
-		p.ring.Hide()
+	for _, r := range p.ring {
+		if p.focused {
+			r.FillColor = ringColour()
+			r.Show()
+		} else {
+			r.Hide()
+		}
+		r.Refresh()
 	}
-	p.ring.Refresh()
 }
 
 // TypedKey implements fyne.Focusable.
@@ -373,7 +376,7 @@ func (p *Panel) MinSize() fyne.Size {
 
 // CreateRenderer implements fyne.Widget.
 func (p *Panel) CreateRenderer() fyne.WidgetRenderer {
-	return &panelRenderer{p, []fyne.CanvasObject{p.raster, p.ring}}
+	return &panelRenderer{p, []fyne.CanvasObject{p.raster, p.ring[0], p.ring[1], p.ring[2], p.ring[3]}}
 }
 
 type panelRenderer struct {
@@ -387,5 +390,11 @@ func (r *panelRenderer) Objects() []fyne.CanvasObject { return r.objects }
 func (r *panelRenderer) Refresh()                     { r.p.redraw() }
 func (r *panelRenderer) Layout(s fyne.Size) {
 	r.p.raster.Resize(s)
-	r.p.ring.Resize(s)
+	const wide = 2
+	for i, at := range []struct{ x, y, w, h float32 }{
+		{0, 0, s.Width, wide}, {0, s.Height - wide, s.Width, wide}, {0, 0, wide, s.Height}, {s.Width - wide, 0, wide, s.Height},
+	} {
+		r.p.ring[i].Resize(fyne.NewSize(at.w, at.h))
+		r.p.ring[i].Move(fyne.NewPos(at.x, at.y))
+	}
 }

@@ -61,6 +61,8 @@ func (t *Theme) Size(n fyne.ThemeSizeName) float32 {
 		return 5
 	case theme.SizeNameInlineIcon:
 		return 16
+	case theme.SizeNameModalBlurRadius:
+		return 0 // a blur behind dialogs takes most of a second without a graphics card
 	case theme.SizeNameScrollBar:
 		return 10
 	}

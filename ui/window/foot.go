@@ -56,7 +56,7 @@ func (f *foot) show() {
 		if f.timer != nil {
 			f.timer.Stop()
 		}
-		f.timer = time.AfterFunc(patience, func() { fyne.Do(f.show) })
+		f.timer = time.AfterFunc(patience, func() { view.Post(f.show) })
 	}
 	label := "Stop"
 	if sn.Stopped {

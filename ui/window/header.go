@@ -7,12 +7,14 @@ import (
 	"time"
 
 	"fyne.io/fyne/v2"
-	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/widget"
 
+	"bandwright/physics/bands"
 	"bandwright/physics/catalog"
+	"bandwright/physics/dos"
+	"bandwright/physics/edges"
 	"bandwright/ui/present"
 	"bandwright/ui/session"
 	"bandwright/ui/view"
@@ -31,10 +33,10 @@ type header struct {
 	chips   []*view.Chip
 	other   *view.Chip // path or Ledger, in a narrow window
 	find    *view.Chip
-	cards   []*canvas.Rectangle
 
 	crystals []crystalChoice
 	shownA   string
+	made     chipsOf
 }
 
 // crystalChoice is a crystal of the shipped sets with the sets that describe it.
@@ -190,7 +192,24 @@ func (h *header) show() {
 		h.entry.SetText(text)
 	}
 
-	chips := present.Chips(sn)
+	// Finding edges on the path takes some milliseconds, too long for every
+	// step of a drag, in which the edges are out of date anyway.
+	if made := (chipsOf{sn.Edges, sn.DOS, sn.Bands, sn.EdgesStale, sn.EdgesErr}); made != h.made && !(sn.EdgesStale && h.made.edges != nil) {
+		h.made = made
+		h.showChips(present.Chips(sn))
+	}
+}
+
+// chipsOf is what chips were made from.
+type chipsOf struct {
+	edges *edges.Edges
+	dos   *dos.DOS
+	bands *bands.Bands
+	stale bool
+	err   error
+}
+
+func (h *header) showChips(chips []present.Chip) {
 	for i, b := range h.chips {
 		if i >= len(chips) {
 			b.Hide()

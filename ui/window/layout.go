@@ -103,3 +103,23 @@ func (d *desk) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 func (d *desk) MinSize([]fyne.CanvasObject) fyne.Size {
 	return fyne.NewSize(640, 480)
 }
+
+// stacked puts a strip of controls below a panel, without a gap.
+type stacked struct{}
+
+// Layout implements fyne.Layout.
+func (stacked) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	panel, strip := objects[0], objects[1]
+	strip.Resize(fyne.NewSize(size.Width, strip.MinSize().Height))
+	low := strip.MinSize().Height // rows may depend on the width
+	strip.Resize(fyne.NewSize(size.Width, low))
+	strip.Move(fyne.NewPos(0, size.Height-low))
+	panel.Resize(fyne.NewSize(size.Width, max(1, size.Height-low)))
+	panel.Move(fyne.NewPos(0, 0))
+}
+
+// MinSize implements fyne.Layout.
+func (stacked) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	a, b := objects[0].MinSize(), objects[1].MinSize()
+	return fyne.NewSize(max(a.Width, b.Width), a.Height+b.Height)
+}

@@ -67,7 +67,7 @@ type place struct {
 }
 
 // recordStep is how often the state is looked at.
-const recordStep = 20 * time.Millisecond
+const recordStep = 40 * time.Millisecond
 
 func newRecorder(w *Window, out io.Writer) *recorder {
 	return &recorder{w: w, out: out, quit: make(chan struct{})}
@@ -83,7 +83,7 @@ func (r *recorder) start() {
 		for {
 			select {
 			case <-tick.C:
-				fyne.Do(r.write)
+				view.Post(r.write)
 			case <-r.quit:
 				return
 			}

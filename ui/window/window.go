@@ -13,7 +13,6 @@ import (
 	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/dialog"
-	"fyne.io/fyne/v2/layout"
 	"fyne.io/fyne/v2/theme"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -60,6 +59,7 @@ type Window struct {
 	desk        *desk
 	deskBox     *fyne.Container
 	hints       *view.Hints
+	strips      []*canvas.Rectangle // behind the controls below path and Ledger
 
 	header  *header
 	editor  *pathEditor
@@ -102,7 +102,7 @@ func New(o Options) (*Window, error) {
 			d = read
 		}
 	}
-	w.session = session.New(session.Options{Post: fyne.Do, Document: d})
+	w.session = session.New(session.Options{Post: view.Post, Document: d})
 	if o.Study != "" && openErr == nil {
 		openErr = w.session.Open(o.Study)
 	}
@@ -165,21 +165,21 @@ func (w *Window) build() {
 	w.tools = newTools(w)
 	w.foot = newFoot(w)
 
-	card := func(content fyne.CanvasObject) fyne.CanvasObject {
+	// The pictures bring their own paper. A rectangle below each would cost as
+	// much as the picture where there is no graphics card.
+	strip := func(content fyne.CanvasObject) fyne.CanvasObject {
 		back := canvas.NewRectangle(theme.Color(theme.ColorNameHeaderBackground))
-		back.StrokeColor = theme.Color(theme.ColorNameSeparator)
-		back.StrokeWidth = 1
-		w.header.cards = append(w.header.cards, back)
-		return container.NewStack(back, container.New(layout.NewCustomPaddedLayout(1, 1, 1, 1), content))
+		w.strips = append(w.strips, back)
+		return container.NewStack(back, content)
 	}
 	w.desk = &desk{
 		header: w.header.box, foot: w.foot.box,
-		zone:   card(container.NewStack(w.zone, w.tools.zone)),
-		bands:  card(container.NewStack(w.bands, w.tools.bands)),
-		dos:    card(w.dos),
-		ladder: card(w.ladder),
-		path:   card(container.NewBorder(nil, w.editor.box, nil, nil, w.path)),
-		ledger: card(container.NewBorder(nil, w.tools.factors, nil, nil, w.ledger)),
+		zone:   container.NewStack(w.zone, w.tools.zone),
+		bands:  container.NewStack(w.bands, w.tools.bands),
+		dos:    w.dos,
+		ladder: w.ladder,
+		path:   container.New(stacked{}, w.path, strip(w.editor.box)),
+		ledger: container.New(stacked{}, w.ledger, strip(w.tools.factors)),
 		split:  0.57, zoneShare: 0.26, pathShare: 0.34,
 	}
 	w.desk.changed = func(bool) { w.header.narrowed() }
@@ -222,8 +222,10 @@ func (w *Window) changed(sn *session.Snapshot) {
 	}
 	w.title()
 	w.header.show()
-	w.editor.show()
-	w.tools.show()
+	if !underway(old, sn) {
+		w.editor.show()
+		w.tools.show()
+	}
 	w.foot.show()
 	if w.soon != nil {
 		w.soon.Stop()
@@ -231,7 +233,7 @@ func (w *Window) changed(sn *session.Snapshot) {
 	w.v.Lagging = false
 	if sn.BandsStale || sn.DOSStale || sn.EdgesStale {
 		w.soon = time.AfterFunc(staleAfter, func() {
-			fyne.Do(func() {
+			view.Post(func() {
 				w.v.Lagging = true
 				w.drawAll()
 			})
@@ -304,7 +306,7 @@ func (w *Window) drawLedger() {
 	sn, v := w.sn, w.v
 	w.ledger.SetDraw(func(width, height float64) *picture.Picture {
 		p, end := present.Ledger(sn, &v, width, height)
-		fyne.Do(func() { w.ledgerEnd = end })
+		view.Post(func() { w.ledgerEnd = end })
 		return p
 	})
 }
@@ -350,10 +352,9 @@ func (w *Window) setTheme(name string) {
 	w.prefs.Theme = name
 	w.v.Theme = themeNamed(name)
 	w.app.Settings().SetTheme(&view.Theme{Colours: w.v.Theme})
-	for _, c := range w.header.cards {
-		c.FillColor = theme.Color(theme.ColorNameHeaderBackground)
-		c.StrokeColor = theme.Color(theme.ColorNameSeparator)
-		c.Refresh()
+	for _, r := range w.strips {
+		r.FillColor = theme.Color(theme.ColorNameHeaderBackground)
+		r.Refresh()
 	}
 	w.drawAll()
 	w.foot.show()
