@@ -77,6 +77,9 @@ func (c *cover) line(ax, ay, bx, by float64) {
 	}
 	// What is left of the clip covers its first column on; what is right of it covers nothing.
 	if ax < c.x0 || bx < c.x0 || ax > c.x1 || bx > c.x1 {
+		if ax >= c.x1 && bx >= c.x1 {
+			return // what the rows of the clip left of it
+		}
 		if ax <= c.x0 && bx <= c.x0 {
 			c.edge(c.x0, ay, c.x0, by, dir)
 			return

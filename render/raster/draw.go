@@ -13,7 +13,7 @@ import (
 )
 
 // flatness is how far, in pixels, a curve may be from the polyline drawn for it.
-const flatness = 0.08
+const flatness = 0.02
 
 // Rasteriser paints Pictures and keeps buffers and letters for the next one. The zero Rasteriser is ready.
 type Rasteriser struct {
@@ -122,7 +122,15 @@ func (r *Rasteriser) fill(path *picture.Path, f picture.Fill) {
 
 func nearest(v float64) float64 { return math.Floor(v + 0.5) }
 
-func (r *Rasteriser) place(p point) point { return picture.Pt(p.X*r.scale, p.Y*r.scale) }
+func (r *Rasteriser) place(p point) point {
+	return picture.Pt(bounded(p.X*r.scale), bounded(p.Y*r.scale))
+}
+
+// farthest is the number of pixels beyond which places are as good as there: further out, differences of coordinates
+// lose their digits.
+const farthest = 1e12
+
+func bounded(v float64) float64 { return min(max(v, -farthest), farthest) }
 
 // rectangle says whether the path is one upright rectangle.
 func rectangle(p *picture.Path) (picture.Rect, bool) {
@@ -142,7 +150,7 @@ func (r *Rasteriser) Stroke(path *picture.Path, s picture.Stroke) {
 	if r.cover.clip.Empty() || s.Color.A == 0 {
 		return
 	}
-	width := s.Width * r.scale
+	width := min(s.Width*r.scale, farthest)
 	crisp := s.Crisp
 	if !crisp && len(path.Points) == 2 {
 		a, b := path.Points[0], path.Points[1]

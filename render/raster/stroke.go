@@ -31,7 +31,7 @@ func (s *stroker) polygon(p ...point) {
 	}
 	for i, a := range p {
 		b := p[(i+1)%len(p)]
-		if area > 0 {
+		if area < 0 {
 			s.c.line(b.X, b.Y, a.X, a.Y)
 		} else {
 			s.c.line(a.X, a.Y, b.X, b.Y)
@@ -42,18 +42,14 @@ func (s *stroker) polygon(p ...point) {
 // sector adds the part of a disc about o between the radii a and b (vectors of length half), the shorter way round.
 func (s *stroker) sector(o, a, b point) {
 	angle := math.Atan2(a.X*b.Y-a.Y*b.X, a.X*b.X+a.Y*b.Y)
-	// A chord's distance from the arc is r(1 − cos(h/2)) ≤ 0.08 pixels.
+	// A chord's distance from the arc is r(1 − cos(h/2)) ≤ 0.02 pixels.
 	n := 1
-	if s.half > 0.08 {
-		n = max(1, min(90, int(math.Ceil(math.Abs(angle)/(2*math.Acos(1-0.08/s.half))))))
+	if s.half > 0.02 {
+		n = max(1, min(90, int(math.Ceil(math.Abs(angle)/(2*math.Acos(1-0.02/s.half))))))
 	}
 	sin, cos := math.Sincos(angle / float64(n))
-	sign := 1.0
-	if angle > 0 {
-		sign = -1
-	}
 	edge := func(p, q point) {
-		if sign < 0 {
+		if angle < 0 {
 			p, q = q, p
 		}
 		s.c.line(p.X, p.Y, q.X, q.Y)
@@ -251,7 +247,7 @@ func (s *stroker) dashes(pts []point, closed bool, pattern []float64, start floa
 		start += period
 	}
 	k := 0
-	for start >= pattern[k] {
+	for start > 0 && start >= pattern[k] {
 		start -= pattern[k]
 		k = (k + 1) % len(pattern)
 	}
@@ -280,6 +276,16 @@ func (s *stroker) dashes(pts []point, closed bool, pattern []float64, start floa
 		dx, dy := b.X-a.X, b.Y-a.Y
 		length := math.Hypot(dx, dy)
 		if length == 0 {
+			continue
+		}
+		if length > 1e12*period {
+			// The place in the pattern is beyond the digits of a number: the
+			// line is drawn whole.
+			flush()
+			s.line([]point{a, b}, false)
+			if on {
+				piece = append(piece, b)
+			}
 			continue
 		}
 		done := 0.0

@@ -104,8 +104,24 @@ func (l *letters) make(k glyphKey) *mask {
 		fillLoop(&l.c, pts)
 	})
 	l.c.sweepMask(m)
+	if size < boldest {
+		for i, a := range m.a {
+			m.a[i] = inked[a]
+		}
+	}
 	return m
 }
+
+// inked strengthens partial coverage of small letters: their stems are thinner than a pixel or two and would look grey.
+var inked = func() (t [256]uint8) {
+	for i := range t {
+		t[i] = uint8(255*math.Pow(float64(i)/255, 0.8) + 0.5)
+	}
+	return t
+}()
+
+// boldest is the size in pixels from which letters are not strengthened.
+const boldest = 24
 
 // sweepMask writes what has been accumulated as coverage and leaves the buffer clean.
 func (c *cover) sweepMask(m *mask) {
@@ -187,9 +203,7 @@ func (r *Rasteriser) text(t *picture.Text, x, y float64, s picture.TextStyle) {
 		}
 		r.paint.mask(m, a+m.x, b+m.y, r.cover.clip)
 	}
-	if !upright {
-		r.cover.sweep(&r.paint, false)
-	}
+	r.cover.sweep(&r.paint, false) // of the letters that no mask was used for
 	for _, q := range t.Rules {
 		if turn == 0 && upright {
 			top := math.Floor(y + q.Y0*r.scale + 0.5)
