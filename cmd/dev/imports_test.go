@@ -47,9 +47,10 @@ var arrows = []struct {
 	// Drawing: from points and labels to pixels. It knows no physics.
 	{"render/picture", nil},
 	{"render/typeset", []string{"assets", "render/picture"}},
-	{"render/scene", []string{"render/picture", "render/typeset"}},
-	{"render/chart", []string{"render/picture", "render/typeset"}},
-	{"render/project", []string{"render/picture", "render/typeset", "render/scene"}},
+	{"render/mark", []string{"render/picture", "render/typeset"}},
+	{"render/scene", []string{"render/picture", "render/typeset", "render/mark"}},
+	{"render/chart", []string{"render/picture", "render/typeset", "render/mark"}},
+	{"render/project", []string{"render/picture", "render/typeset", "render/mark", "render/scene"}},
 	{"render/raster", []string{"render/picture", "render/typeset"}},
 
 	// The window's logic, headless; present is where physics and drawing meet.

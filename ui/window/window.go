@@ -225,8 +225,8 @@ func (w *Window) changed(sn *session.Snapshot) {
 	if !underway(old, sn) {
 		w.editor.show()
 		w.tools.show()
+		w.foot.show()
 	}
-	w.foot.show()
 	if w.soon != nil {
 		w.soon.Stop()
 	}
@@ -236,6 +236,7 @@ func (w *Window) changed(sn *session.Snapshot) {
 			view.Post(func() {
 				w.v.Lagging = true
 				w.drawAll()
+				w.foot.show()
 			})
 		})
 		if underway(old, sn) {
@@ -268,7 +269,9 @@ func (w *Window) title() {
 	if t := w.sn.Doc.Title; t != "" {
 		name = t + " – " + name
 	}
-	w.win.SetTitle(name + " – Bandwright")
+	if name += " – Bandwright"; name != w.win.Title() {
+		w.win.SetTitle(name)
+	}
 }
 
 func (w *Window) drawAll() {
