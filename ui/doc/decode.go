@@ -138,6 +138,9 @@ func decodeCrystal(t table) (Crystal, *crystal.Crystal) {
 		c.Sites = append(c.Sites, s)
 	}
 	t.unused()
+	if len(t.r.list) > problems {
+		return c, nil // what seems to be missing may be misspelled
+	}
 	free := t.used["lattice"] || len(c.Sites) > 0
 	switch {
 	case c.Prototype != "" && free:
