@@ -41,13 +41,11 @@ func Chips(sn *session.Snapshot) []Chip {
 		text := "metal · Fermi level " + number(e.Fermi, 3) + " eV"
 		hint := "Fermi level in the model's own zero"
 		if sn.DOS != nil && !sn.DOSStale {
-			_, density := sn.DOS.Count(sn.DOS.FermiLevel)
-			text = "metal · Fermi level " + number(sn.DOS.FermiLevel, 3) + " eV"
+			_, density := sn.DOS.Count(e.Fermi)
 			atoms := float64(len(sn.Built.Crystal.Sites))
 			list = append(list, Chip{Text: number(density/atoms, 3) + " eV⁻¹ atom⁻¹ there", Hint: "density of states at the Fermi level, both spins"})
-			if low, _ := sn.DOS.Range(); true {
-				list = append(list, Chip{Text: "filled width " + number(sn.DOS.FermiLevel-low, 2) + " eV", Hint: "from the lowest level to the Fermi level"})
-			}
+			low, _ := sn.DOS.Range()
+			list = append(list, Chip{Text: "filled width " + number(e.Fermi-low, 2) + " eV", Hint: "from the lowest level to the Fermi level"})
 		}
 		return append([]Chip{{Text: text + stale, Hint: hint}}, list...)
 	case edges.Semimetal:
