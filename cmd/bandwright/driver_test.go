@@ -13,7 +13,6 @@ import (
 	"strconv"
 	"strings"
 	"sync"
-	"syscall"
 	"testing"
 	"time"
 )
@@ -333,12 +332,6 @@ func (w *window) close() {
 	if said := w.stderr.String(); strings.Contains(said, "panic") || strings.Contains(said, "goroutine ") {
 		w.t.Errorf("the program panicked:\n%s", tail(said, 4000))
 	}
-}
-
-// kill ends the program without asking it.
-func (w *window) kill() {
-	w.process.Process.Signal(syscall.SIGKILL)
-	<-w.exited
 }
 
 // memory is the resident size of the program in MiB, from Linux's /proc.

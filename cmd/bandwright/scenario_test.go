@@ -59,6 +59,22 @@ func TestWindowScenario(t *testing.T) {
 	clicked := w.wait("a click on the bands", patience, func(s state) bool { return s.Held != edge.Held })
 	w.sums(clicked)
 
+	// Magnify the energies with the wheel, and back with a double click.
+	w.wheel(w.in("dos", 0.5, 0.5), 3)
+	w.wait("magnified energies", patience, func(s state) bool { return s.Window[1] > s.Window[0] })
+	w.doubleClick(w.in("ladder", 0.4, 0.97))
+	w.wait("all energies again", patience, func(s state) bool { return s.Window == [2]float64{} })
+
+	// The pointer over the bands moves the marker in the zone.
+	w.move(w.in("dos", 0.5, 0.05))
+	w.settled()
+	plain := w.look("zone")
+	w.move(w.in("bands", 0.4, 0.5))
+	w.settled()
+	if changed(plain, w.look("zone")) == 0 {
+		t.Error("the pointer over the bands leaves the zone as it was")
+	}
+
 	// Pin the antibonding s level at Γ of silicon, then that of tin.
 	w.key("g")
 	time.Sleep(300 * time.Millisecond)

@@ -354,12 +354,12 @@ func (pr *Projector) line(id picture.ID, a, b mgl64.Vec3, s, behind picture.Stro
 	pr.spans = pr.body.spans(pr.spans[:0], a, b)
 	d := b.Sub(a)
 	for _, sp := range pr.spans {
-		p, q := from, to
-		var np, nq float64
-		if p, np = pr.view.Project(a.Add(d.Mul(sp.t0))); sp.t0 == 0 {
+		p, np := pr.view.Project(a.Add(d.Mul(sp.t0)))
+		q, nq := pr.view.Project(a.Add(d.Mul(sp.t1)))
+		if sp.t0 == 0 {
 			p = from
 		}
-		if q, nq = pr.view.Project(a.Add(d.Mul(sp.t1))); sp.t1 == 1 {
+		if sp.t1 == 1 {
 			q = to
 		}
 		c := piece{kind: linePiece, layer: sp.layer, id: id, a: p, b: q, na: np, nb: nq, stroke: pr.dim(s, behind, sp.layer)}
