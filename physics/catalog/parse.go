@@ -25,9 +25,6 @@ func ParseFile(name string, data []byte) (*Set, error) {
 		return nil, fe
 	}
 	s := parse(root)
-	if r.err == nil {
-		r.unused()
-	}
 	if r.err != nil {
 		return nil, r.err
 	}
@@ -41,6 +38,8 @@ func parse(root table) *Set {
 		root.fail("bandset", "begin the file with bandset = 1", "the file is no parameter set: bandset is missing")
 	}
 	root.count("bandset", formVersion, formVersion)
+	root.only("bandset", "id", "title", "prototype", "elements", "a", "shells", "lengths", "limits", "notes",
+		"source", "obtained", "fit", "measured", "valence", "onsite", "spin_orbit", "distance_law", "bond")
 	s.ID = required(root, "id", "give the set a name, such as id = \"mine/Si\"")
 	s.Title = root.text("title")
 	if s.Title == "" {
@@ -117,6 +116,7 @@ func parseStructure(root table, s *Set) {
 
 func parseSource(root table, s *Set) {
 	t := root.table("source")
+	t.only("authors", "journal", "place", "year", "table")
 	s.Source = Source{Authors: t.text("authors"), Journal: t.text("journal"), Place: t.text("place"), Table: t.text("table")}
 	s.Source.Year = t.count("year", 0, 9999)
 	s.Obtained = make(map[string]string)
@@ -145,6 +145,7 @@ func checkObtained(t table, key, v string) {
 }
 
 func parseFit(t table, s *Set) {
+	t.only("to", "valence_only", "window")
 	s.Fit.To = t.text("to")
 	s.Fit.ValenceOnly = t.truth("valence_only")
 	if w := t.numbers("window"); w != nil {
@@ -161,6 +162,7 @@ func parseMeasured(root table, s *Set) {
 		return
 	}
 	t := root.table("measured")
+	t.only("kind", "where", "gap_300K", "gap_0K", "split_off", "source", "obtained")
 	m := &Measured{Kind: t.text("kind"), Where: t.text("where"), Source: t.text("source"), Obtained: t.text("obtained")}
 	for _, f := range []struct {
 		key string
@@ -228,6 +230,7 @@ func parseSpinOrbit(t table, s *Set) {
 	s.SpinOrbit = make(map[string]SpinOrbit)
 	for _, element := range t.keys() {
 		sub := t.table(element)
+		sub.only("delta", "lambda", "obtained", "note")
 		delta, hasDelta := sub.number("delta")
 		lambda, hasLambda := sub.number("lambda")
 		so := SpinOrbit{Delta: delta, Obtained: sub.text("obtained"), Note: sub.text("note")}
@@ -261,10 +264,15 @@ func parseBonds(root table, s *Set) {
 		law[key] = x
 	}
 	bonds := root.table("bond")
+	shells := make([]string, s.Shells)
+	for i := range shells {
+		shells[i] = fmt.Sprintf("shell%d", i+1)
+	}
+	bonds.only(shells...)
 	for shell := 1; shell <= s.Shells; shell++ {
-		key := fmt.Sprintf("shell%d", shell)
+		key := shells[shell-1]
 		if !bonds.has(key) {
-			root.fail("bond", fmt.Sprintf("add tables such as [bond.%s.%s]", key, examplePair(s)), "the bond parameters of shell %d are missing", shell)
+			root.fail("shells", fmt.Sprintf("add tables such as [bond.%s.%s]", key, examplePair(s)), "the bond parameters of shell %d are missing", shell)
 			return
 		}
 		pairs := bonds.table(key)
@@ -473,11 +481,16 @@ func (p *pairReader) read() {
 		}
 		a, b, symmetry, ok := splitKey(key)
 		if !ok {
-			continue // reported as an unknown key
+			p.unknown(key)
+			return
 		}
 		value, _ := p.t.number(key)
 		p.put(key, a, b, symmetry, value, "")
 	}
+}
+
+func (p *pairReader) unknown(key string) {
+	p.t.fail(key, "use the name of a two-centre integral such as ss_sigma, ps_sigma or pp_pi; the README of the sets lists them", "%q is no bond parameter", key)
 }
 
 // sum reads a sum over the four bonds of a tetrahedral crystal.
@@ -493,9 +506,11 @@ func (p *pairReader) sum(key string) {
 	if name != "xx" {
 		var ok bool
 		if a, name, ok = cutShell(name); !ok || a.Degree() > 1 {
-			return // reported as an unknown key
+			p.unknown(key)
+			return
 		}
 		if b, name, ok = cutShell(name); !ok || name != "" || b.Degree() > 1 || a.Degree()+b.Degree() > 1 {
+			p.unknown(key)
 			return
 		}
 	}

@@ -4,22 +4,23 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"sort"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/BurntSushi/toml"
 )
 
 // reader walks a TOML file key by key. It keeps the first error in the order
-// of the walk, with the position of the key it concerns, and reports keys
-// that nobody asked for. Arrays of tables have no positions of their own, so
+// of the walk, with the position of the key it concerns. Arrays of tables have no positions of their own, so
 // the form of the files does without them.
 type reader struct {
-	file string
-	meta toml.MetaData
-	root map[string]toml.Primitive
-	used map[string]bool
-	err  *FileError
+	file  string
+	meta  toml.MetaData
+	root  map[string]toml.Primitive
+	lines []string
+	err   *FileError
 }
 
 // table is one table of the file, or none (m == nil) when it is absent.
@@ -30,29 +31,36 @@ type table struct {
 }
 
 func open(file string, data []byte) (*reader, table, *FileError) {
-	r := &reader{file: file, used: make(map[string]bool)}
+	r := &reader{file: file, lines: strings.Split(string(data), "\n")}
 	if i := strings.IndexByte(string(data), 0); i >= 0 {
-		return nil, table{}, &FileError{File: file, Line: 1 + strings.Count(string(data[:i]), "\n"),
+		return nil, table{}, &FileError{File: file, Line: 1 + strings.Count(string(data[:i]), "\n"), Column: i - strings.LastIndexByte(string(data[:i]), '\n'),
 			Problem: "the file holds a zero byte and is no text", Remedy: "give a TOML text file in UTF-8"}
 	}
 	var err error
 	r.meta, err = toml.Decode(string(data), &r.root)
 	if err != nil {
-		return nil, table{}, syntaxError(file, err)
+		return nil, table{}, r.syntaxError(err)
 	}
 	m := make(map[string]any)
 	if _, err = toml.Decode(string(data), &m); err != nil {
-		return nil, table{}, syntaxError(file, err)
+		return nil, table{}, r.syntaxError(err)
 	}
 	return r, table{r: r, m: m}, nil
 }
 
-func syntaxError(file string, err error) *FileError {
-	fe := &FileError{File: file, Problem: strings.TrimPrefix(err.Error(), "toml: "),
+func (r *reader) syntaxError(err error) *FileError {
+	fe := &FileError{File: r.file, Line: 1, Column: 1, Problem: strings.TrimPrefix(err.Error(), "toml: "),
 		Remedy: "write the file as TOML: key = value, texts in quotes, each key once"}
 	var pe toml.ParseError
 	if errors.As(err, &pe) {
-		fe.Line, fe.Column, fe.Problem = pe.Position.Line, pe.Position.Col, pe.Message
+		// At the end of a file the decoder may stand behind it.
+		fe.Line = min(max(pe.Position.Line, 1), len(r.lines))
+		line := r.lines[fe.Line-1]
+		fe.Column = 1 + utf8.RuneCountInString(line[:min(max(pe.Position.Col-1, 0), len(line))])
+		fe.Problem = pe.Message
+		if strings.Contains(pe.Message, "already been defined") {
+			fe.Column = 1 // the decoder stands behind the second one
+		}
 	}
 	return fe
 }
@@ -66,29 +74,59 @@ var errFound = errors.New("found")
 // UnmarshalTOML implements toml.Unmarshaler.
 func (finder) UnmarshalTOML(any) error { return errFound }
 
-// position returns line and column of the value at path, or of the nearest
-// enclosing table that has one.
+// position returns line and column of the value at path; of the nearest
+// enclosing table that has a place when the value itself is not in the file;
+// and the start of the file when there is none.
 func (r *reader) position(path []string) (line, column int) {
+	line, column = 1, 1
 	tables := r.root
-	for i, key := range path {
+	for _, key := range path {
 		p, ok := tables[key]
 		if !ok {
 			break
 		}
-		var pe toml.ParseError
-		if errors.As(r.meta.PrimitiveDecode(p, &finder{}), &pe) && pe.Position.Line > 0 {
-			line, column = pe.Position.Line, pe.Position.Col
+		if l, c := r.place(p); l > 0 {
+			line, column = l, c
 		}
-		if i == len(path)-1 {
+		tables = nil
+		if r.meta.PrimitiveDecode(p, &tables) != nil {
 			break
 		}
-		var next map[string]toml.Primitive
-		if r.meta.PrimitiveDecode(p, &next) != nil {
-			break
-		}
-		tables = next
 	}
 	return line, column
+}
+
+// place returns where a value stands, or the first place within a table that
+// has no header of its own, as bond in [bond.shell1.Si-Si]; 0 when there is none.
+func (r *reader) place(p toml.Primitive) (line, column int) {
+	var pe toml.ParseError
+	if errors.As(r.meta.PrimitiveDecode(p, &finder{}), &pe) && pe.Position.Line > 0 {
+		return pe.Position.Line, r.column(pe.Position)
+	}
+	var inner map[string]toml.Primitive
+	if r.meta.PrimitiveDecode(p, &inner) != nil {
+		return 0, 0
+	}
+	for _, q := range inner {
+		if l, c := r.place(q); l > 0 && (line == 0 || l < line || l == line && c < column) {
+			line, column = l, c
+		}
+	}
+	return line, column
+}
+
+// column counts characters, as editors do, up to the mark that opens a value
+// or the header of a table: the decoder counts bytes and stands behind it.
+func (r *reader) column(at toml.Position) int {
+	if at.Line > len(r.lines) {
+		return at.Col
+	}
+	line := r.lines[at.Line-1]
+	before := line[:min(max(at.Col-1, 0), len(line))]
+	if body := strings.TrimLeft(line, " \t"); strings.HasPrefix(body, "[") {
+		before = line[:len(line)-len(body)]
+	}
+	return 1 + utf8.RuneCountInString(strings.TrimRight(before, "[\"'"))
 }
 
 // fail records the first problem, at the key path.
@@ -109,14 +147,6 @@ func (t table) fail(key, remedy, problem string, args ...any) {
 }
 
 func dotted(path []string) string { return toml.Key(path).String() }
-
-func (t table) take(key string) (any, bool) {
-	v, ok := t.m[key]
-	if ok {
-		t.r.used[dotted(t.at(key))] = true
-	}
-	return v, ok
-}
 
 func (t table) has(key string) bool { _, ok := t.m[key]; return ok }
 
@@ -154,7 +184,7 @@ func (t table) wrong(key string, v any, want string) {
 
 // text returns a text, "" when absent.
 func (t table) text(key string) string {
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return ""
 	}
@@ -167,7 +197,7 @@ func (t table) text(key string) string {
 
 // number returns a finite number and whether the key is there.
 func (t table) number(key string) (float64, bool) {
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return 0, false
 	}
@@ -195,7 +225,7 @@ func toNumber(v any) (float64, bool) {
 
 // count returns a whole number from 1 to max, or otherwise when absent.
 func (t table) count(key string, otherwise, max int) int {
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return otherwise
 	}
@@ -213,7 +243,7 @@ func (t table) count(key string, otherwise, max int) int {
 
 // truth returns true or false, false when absent.
 func (t table) truth(key string) bool {
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return false
 	}
@@ -226,7 +256,7 @@ func (t table) truth(key string) bool {
 
 // texts returns a list of texts, nil when absent.
 func (t table) texts(key string) []string {
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return nil
 	}
@@ -249,7 +279,7 @@ func (t table) texts(key string) []string {
 
 // numbers returns a list of finite numbers, nil when absent.
 func (t table) numbers(key string) []float64 {
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return nil
 	}
@@ -273,7 +303,7 @@ func (t table) numbers(key string) []float64 {
 // table returns the table under key, empty when absent.
 func (t table) table(key string) table {
 	sub := table{r: t.r, path: t.at(key)}
-	v, ok := t.take(key)
+	v, ok := t.m[key]
 	if !ok {
 		return sub
 	}
@@ -286,12 +316,12 @@ func (t table) table(key string) table {
 	return sub
 }
 
-// unused reports the first key of the file that nobody asked for.
-func (r *reader) unused() {
-	for _, key := range r.meta.Keys() {
-		if !r.used[key.String()] {
-			r.fail(key, "remove it or correct its spelling; the keys of a set are described in the README of the sets", "unknown key %s", key)
-			return
+// only reports the first key, in alphabetical order, that the table may not
+// have.
+func (t table) only(known ...string) {
+	for _, key := range t.keys() {
+		if !slices.Contains(known, key) {
+			t.fail(key, "remove it or correct its spelling: known here are "+strings.Join(known, ", "), "unknown key %s", dotted(t.at(key)))
 		}
 	}
 }

@@ -56,7 +56,10 @@ func Lookup(id string) (*Set, error) {
 		if s.ID == id {
 			return s, nil
 		}
-		if l := strings.ToLower(s.ID); l == wanted || last != "" && strings.HasSuffix(l, "/"+last) {
+		switch l := strings.ToLower(s.ID); {
+		case l == wanted:
+			return nil, fmt.Errorf("unknown parameter set %q: did you mean %s?", id, s.ID)
+		case last != "" && strings.HasSuffix(l, "/"+last):
 			near = append(near, s.ID)
 		}
 	}
