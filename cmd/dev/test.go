@@ -129,8 +129,14 @@ func (w *workshop) fuzz(ctx context.Context, targets []testFunc, each time.Durat
 	}
 	var failed []string
 	for _, t := range targets {
-		err := w.command(ctx, nil, "go", "test", tags(), "-vet=off", "-run=^$", "-fuzz=^"+t.name+"$",
+		var said strings.Builder
+		err := w.commandTo(ctx, io.MultiWriter(w.out, &said), nil, "go", "test", tags(), "-vet=off", "-run=^$", "-fuzz=^"+t.name+"$",
 			"-fuzztime="+each.String(), "-timeout=5m", "./"+t.folder)
+		// A target that is busy when its time ends is reported as failed, with
+		// no input that breaks it: that is no fault of the target.
+		if err != nil && strings.Contains(said.String(), "context deadline exceeded") && !strings.Contains(said.String(), "Failing input") {
+			continue
+		}
 		if err != nil {
 			failed = append(failed, t.folder+" "+t.name)
 		}

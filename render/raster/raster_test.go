@@ -129,6 +129,9 @@ func TestCirclesHaveTheirArea(t *testing.T) {
 
 // A stroke with round joins and caps covers what is nearer to the line than half the width.
 func TestStrokesAgainstSampling(t *testing.T) {
+	if testing.Short() {
+		t.Skip("sampling is slow")
+	}
 	const w, h = 64, 48
 	r := rand.New(rand.NewPCG(3, 4))
 	for trial := range 40 {
@@ -160,6 +163,9 @@ func distance(p, a, b picture.Point) float64 {
 
 // Smooth curves, where the two sides are joined on half angles, follow the same rule closely.
 func TestSmoothStrokeAgainstSampling(t *testing.T) {
+	if testing.Short() {
+		t.Skip("sampling is slow")
+	}
 	const w, h = 100, 60
 	var pts []picture.Point
 	for i := range 200 {
