@@ -121,7 +121,9 @@ func chooseSteps(all []step, names []string, fuzzTime time.Duration) ([]step, er
 	return steps, nil
 }
 
-// fuzz runs each target for a while. An input that breaks one is written by go
+// fuzz runs each target for a while. Inputs that reach new code are shortened
+// by a few tries only: by default that takes up to a minute each, all the time
+// there is when the seeds are whole files. An input that breaks one is written by go
 // test into the package's testdata/fuzz and is from then on a test.
 func (w *workshop) fuzz(ctx context.Context, targets []testFunc, each time.Duration) error {
 	if len(targets) == 0 {
@@ -131,7 +133,7 @@ func (w *workshop) fuzz(ctx context.Context, targets []testFunc, each time.Durat
 	for _, t := range targets {
 		var said strings.Builder
 		err := w.commandTo(ctx, io.MultiWriter(w.out, &said), nil, "go", "test", tags(), "-vet=off", "-run=^$", "-fuzz=^"+t.name+"$",
-			"-fuzztime="+each.String(), "-timeout=5m", "./"+t.folder)
+			"-fuzztime="+each.String(), "-fuzzminimizetime=10x", "-timeout=5m", "./"+t.folder)
 		// A target that is busy when its time ends is reported as failed, with
 		// no input that breaks it: that is no fault of the target.
 		if err != nil && strings.Contains(said.String(), "context deadline exceeded") && !strings.Contains(said.String(), "Failing input") {

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 	"sort"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -85,6 +86,11 @@ func (s *search) lowest(ctx context.Context, extra []lattice.FracK) (lattice.Fra
 	for _, k := range extra {
 		list = append(list, candidate{k, s.at(k)})
 	}
+	lowest := math.Inf(1)
+	for _, c := range list {
+		lowest = min(lowest, c.f)
+	}
+	list = slices.DeleteFunc(list, func(c candidate) bool { return c.f > lowest+window })
 	byValue := func() { sort.SliceStable(list, func(i, j int) bool { return list[i].f < list[j].f }) }
 	// First all of them roughly, then those that may still win.
 	for i := range list {
