@@ -182,7 +182,8 @@ func (s *sheet) terms(sn *session.Snapshot, r picture.Rect) float64 {
 		name := RowName(sn, row.Quantity, row.Subject)
 		s.fitMiddle(name, r.X0, y, textSize, t.Ink, wide)
 		if f, altered := sn.Doc.Model.Factors[FactorKey(row)]; altered && f != 1 {
-			s.write("×"+number(f, 2), r.X0+wide+4, y, smallSize, t.Caution, picture.Middle)
+			beside := typeset.Plain(name, textSize, typeset.Style{}).Width
+			s.write("×"+number(f, 2), r.X0+min(beside, wide)+7, y, smallSize, t.Caution, picture.Middle)
 		}
 		s.write(signed(row.Value, 4), value, y, textSize, t.Ink, picture.Right|picture.Middle)
 		if row.Quantity == ledger.Bond {

@@ -122,11 +122,11 @@ func (s *sheet) zoneFoot(sn *session.Snapshot, v *View, w, h float64) {
 		}
 		s.fit(name+"k = "+Coordinates(setting, frame, g.K)+" "+unit(frame), edgePad, h-26, textSize, s.t.Soft, w-2*edgePad)
 	}
-	held := "held " + sn.HeldLabel
-	if sn.HeldLabel == "" {
-		held = "held"
+	held := "held"
+	if sn.HeldLabel != "" {
+		held += " " + sn.HeldLabel + " "
 	}
-	s.fit(held+"  k = "+Coordinates(setting, frame, sn.Doc.View.Held)+" "+unit(frame)+"  "+heldFacts(sn), edgePad, h-10, textSize, s.t.Ink, w-2*edgePad)
+	s.fit(held+" k = "+Coordinates(setting, frame, sn.Doc.View.Held)+" "+unit(frame)+"  "+heldFacts(sn), edgePad, h-10, textSize, s.t.Ink, w-2*edgePad)
 }
 
 func unit(f lattice.Frame) string {

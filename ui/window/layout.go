@@ -1,6 +1,10 @@
 package window
 
-import "fyne.io/fyne/v2"
+import (
+	"math"
+
+	"fyne.io/fyne/v2"
+)
 
 // desk lays out the window: header above, limits below, and between them the
 // panels. In a wide window Zone, Bands, DOS and Ladder stand in one row, with
@@ -18,6 +22,7 @@ type desk struct {
 	pathShare float32 // of the width, wide window
 	showPath  bool    // narrow window: path instead of Ledger
 	changed   func(narrow bool)
+	origin    func() float32 // where the desk begins in the window, from the top
 	narrow    bool
 	size      fyne.Size
 }
@@ -37,9 +42,18 @@ func (d *desk) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 			d.changed(narrow)
 		}
 	}
+	// Pictures must lie on whole pixels, or the toolkit leaves out rows of
+	// them. The desk itself begins below a menu bar of any height.
+	off := float32(0)
+	if d.origin != nil {
+		y := d.origin()
+		off = float32(math.Ceil(float64(y))) - y
+	}
+	whole := func(v float32) float32 { return float32(math.Round(float64(v))) }
 	place := func(o fyne.CanvasObject, x, y, w, h float32) {
-		o.Resize(fyne.NewSize(max(1, w), max(1, h)))
-		o.Move(fyne.NewPos(x, y))
+		x0, y0 := whole(x), whole(y)
+		o.Resize(fyne.NewSize(max(1, whole(x+w)-x0), max(1, whole(y+h)-y0)))
+		o.Move(fyne.NewPos(x0, y0+off))
 	}
 	width := size.Width - 2*gap
 	place(d.header, gap, gap, width, d.header.MinSize().Height)
@@ -47,7 +61,7 @@ func (d *desk) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	head := d.header.MinSize().Height
 	place(d.header, gap, gap, width, head)
 	foot := d.foot.MinSize().Height
-	place(d.foot, gap, size.Height-foot-3, width, foot)
+	place(d.foot, gap, size.Height-foot-4, width, foot)
 	top := head + 2*gap
 	room := size.Height - foot - 6 - top
 	upper := (room - gap) * d.split
@@ -111,7 +125,7 @@ type stacked struct{}
 func (stacked) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 	panel, strip := objects[0], objects[1]
 	strip.Resize(fyne.NewSize(size.Width, strip.MinSize().Height))
-	low := strip.MinSize().Height // rows may depend on the width
+	low := float32(math.Ceil(float64(strip.MinSize().Height))) // rows may depend on the width
 	strip.Resize(fyne.NewSize(size.Width, low))
 	strip.Move(fyne.NewPos(0, size.Height-low))
 	panel.Resize(fyne.NewSize(size.Width, max(1, size.Height-low)))

@@ -2,6 +2,7 @@ package window
 
 import (
 	"fmt"
+	"math"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
@@ -154,7 +155,7 @@ func (t *tools) scale(f float64, dragging bool) {
 		t.w.say("Choose the term to scale first: from the list, or by a click on its row.")
 		return
 	}
-	t.w.do(session.SetFactor{Term: t.key, Value: f, Dragging: dragging})
+	t.w.do(session.SetFactor{Term: t.key, Value: math.Round(100*f) / 100, Dragging: dragging})
 }
 
 // show brings the controls up to date.

@@ -194,6 +194,7 @@ func (w *Window) build() {
 	d.zoneGrip = newGrip(true, share(&d.zoneShare, func() float32 { return d.size.Width }, 0.15, 0.45))
 	d.pathGap = newGrip(true, share(&d.pathShare, func() float32 { return d.size.Width }, 0.2, 0.55))
 	w.deskBox = container.New(d, d.header, d.zone, d.bands, d.dos, d.ladder, d.path, d.ledger, d.foot, d.rowGrip, d.zoneGrip, d.pathGap)
+	d.origin = func() float32 { return w.app.Driver().AbsolutePositionForObject(w.deskBox).Y }
 	w.win.SetContent(container.NewStack(w.deskBox, w.hints.Layer))
 	w.win.SetMainMenu(w.menu())
 	w.bindKeys()
