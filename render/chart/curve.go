@@ -80,7 +80,7 @@ func (pl Plot) TwoSided(p *picture.Picture, xs, ys, value []float64, above, belo
 		}{{1, above}, {-1, below}} {
 			// Runs in which the value has this sign.
 			for i := 0; i < len(at); {
-				if side.sign*value[first+i] <= 0 {
+				if !(side.sign*value[first+i] > 0) {
 					i++
 					continue
 				}

@@ -69,7 +69,7 @@ func columnsFor(w float64) ladderColumns {
 	c := ladderColumns{tick: 26, energy: 78, size: 84, filled: 112, bar: 124}
 	c.reach = min(54, max(22, w*0.13))
 	c.middle = w - edgePad - 30 - c.reach
-	c.barEnd = c.middle - c.reach - 34
+	c.barEnd = c.middle - c.reach - 44
 	if c.barEnd < c.bar+30 {
 		c.barEnd = c.bar + 30
 	}

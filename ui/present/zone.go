@@ -3,6 +3,7 @@ package present
 import (
 	"fmt"
 	"math"
+	"strings"
 	"sync"
 
 	"github.com/go-gl/mathgl/mgl64"
@@ -12,6 +13,7 @@ import (
 	"bandwright/render/picture"
 	"bandwright/render/project"
 	"bandwright/render/scene"
+	"bandwright/render/typeset"
 	"bandwright/ui/session"
 )
 
@@ -126,7 +128,20 @@ func (s *sheet) zoneFoot(sn *session.Snapshot, v *View, w, h float64) {
 	if sn.HeldLabel != "" {
 		held += " " + sn.HeldLabel + " "
 	}
-	s.fit(held+" k = "+Coordinates(setting, frame, sn.Doc.View.Held)+" "+unit(frame)+"  "+heldFacts(sn), edgePad, h-10, textSize, s.t.Ink, w-2*edgePad)
+	held += " k = " + Coordinates(setting, frame, sn.Doc.View.Held) + " " + unit(frame) + "  "
+	if text := typeset.Layout(typeset.Escape(held)+barred(heldFacts(sn)), textSize, typeset.Style{}); text.Width <= w-2*edgePad {
+		s.Text(text, edgePad, h-10, picture.TextStyle{Color: s.t.Ink})
+	} else {
+		s.fit(held+heldFacts(sn), edgePad, h-10, textSize, s.t.Ink, w-2*edgePad)
+	}
+}
+
+// barred sets the rotoinversions of a point group's name with a bar above.
+func barred(name string) string {
+	for _, n := range []string{"1", "3", "4", "6"} {
+		name = strings.ReplaceAll(name, "-"+n, "\\overline{"+n+"}")
+	}
+	return name
 }
 
 func unit(f lattice.Frame) string {

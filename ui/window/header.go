@@ -115,7 +115,7 @@ func newHeader(w *Window) *header {
 		return container.New(layout.NewGridWrapLayout(fyne.NewSize(width, 32)), o)
 	}
 	row := []fyne.CanvasObject{
-		wide(h.crystal, 126), wide(h.set, 186), h.orbit,
+		wide(h.crystal, 140), wide(h.set, 186), h.orbit,
 		widget.NewLabelWithStyle("a", fyne.TextAlignTrailing, fyne.TextStyle{Italic: true}),
 		wide(h.slider, 100), wide(h.entry, 66), widget.NewLabel("Å"),
 	}
