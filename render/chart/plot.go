@@ -123,8 +123,10 @@ func (pl Plot) XAxis(p *picture.Picture, ticks []Tick, s AxisStyle) {
 		}
 		p.Line(x, pl.Rect.Y1, x, pl.Rect.Y1-majorTick, stroke)
 		text := typeset.Plain(t.Label, s.Size, typeset.Style{})
-		if left := x - text.Width/2; left > end+3 {
-			p.Text(text, x, pl.Rect.Y1+s.gap(), picture.TextStyle{Color: s.Ink, Align: picture.Center | picture.CapTop})
+		// Labels at the ends of the axis stay inside the picture.
+		left := max(2, min(x-text.Width/2, p.Width-2-text.Width))
+		if left > end+3 {
+			p.Text(text, left, pl.Rect.Y1+s.gap(), picture.TextStyle{Color: s.Ink, Align: picture.CapTop})
 			end = left + text.Width
 		}
 	}

@@ -472,6 +472,9 @@ func (s *sheet) readout(sn *session.Snapshot, v *View, plot chart.Plot, zero, us
 		return
 	}
 	// No room beside the legend: at the foot of the plot.
+	if room := plot.Rect.W() - 12; laid.Width > room {
+		laid = typeset.Shorten(plain(text), textSize, typeset.Style{}, room)
+	}
 	x, y := plot.Rect.X0+6, plot.Rect.Y1-8
 	s.FillRect(picture.Span(x-5, y-12, x+laid.Width+5, y+5), picture.Fill{Color: alpha(t.Panel, 225), Crisp: true})
 	s.Text(laid, x, y, picture.TextStyle{Color: t.Ink})

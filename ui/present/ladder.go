@@ -129,18 +129,23 @@ func Ladder(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 			strongest = max(strongest, math.Abs(e.NetBond))
 		}
 	}
+	// Crowded rows become lower before they would overlap.
+	pitch := ladderRow
+	if n := len(shown); n > 0 {
+		pitch = max(6, min(ladderRow, (plot.H()-4)/float64(n)))
+	}
 	at := make([]float64, len(shown))
 	heights := make([]float64, len(shown))
 	for i, n := range shown {
 		at[i] = y.At(sn.Held.Entries[n].Set.Energy)
-		heights[i] = ladderRow
+		heights[i] = pitch
 	}
 	// Spread from the top: the lists run upwards in energy.
 	slices.Reverse(at)
 	slices.Reverse(shown)
 	rows := chart.SpreadLabels(at, heights, plot.Y0+2, plot.Y1-2, 0)
 	for i, n := range shown {
-		s.ladderRow(sn, &sn.Held.Entries[n], n, at[i], rows[i], col, w, zero, strongest)
+		s.ladderRow(sn, &sn.Held.Entries[n], at[i], rows[i], pitch, col, w, zero, strongest)
 	}
 	foot := ""
 	if above > 0 {
@@ -165,7 +170,7 @@ func zeroStroke(t *Theme) picture.Stroke {
 
 // ladderRow draws one set: a tick at its energy, a leader to its row, and the
 // row.
-func (s *sheet) ladderRow(sn *session.Snapshot, e *ledger.Entry, index int, at, row float64, col ladderColumns, w, zero, strongest float64) {
+func (s *sheet) ladderRow(sn *session.Snapshot, e *ledger.Entry, at, row, pitch float64, col ladderColumns, w, zero, strongest float64) {
 	t := s.t
 	focused := sn.Focus != nil && sn.Focus.Set.First == e.Set.First
 	ink := t.Ink
@@ -180,7 +185,8 @@ func (s *sheet) ladderRow(sn *session.Snapshot, e *ledger.Entry, index int, at, 
 	s.SetID(Target{Kind: Level, I: e.Set.First}.id())
 	defer func() { s.SetID(0); s.End() }()
 
-	r := picture.Span(2, row-ladderRow/2+0.5, w-2, row+ladderRow/2-0.5)
+	shrink := pitch / ladderRow
+	r := picture.Span(2, row-pitch/2+0.5, w-2, row+pitch/2-0.5)
 	back := picture.Fill{Crisp: true}
 	if focused {
 		back.Color = t.Glow
@@ -194,15 +200,15 @@ func (s *sheet) ladderRow(sn *session.Snapshot, e *ledger.Entry, index int, at, 
 	s.Polyline(picture.Stroke{Color: t.Faint, Width: 0.8}, picture.Pt(12, at), picture.Pt(20, row), picture.Pt(col.tick, row))
 	style := typeset.Style{Bold: focused}
 	middle := picture.Middle
-	s.Text(typeset.Layout(signed(e.Set.Energy-zero, 3), textSize, style), col.energy, row, picture.TextStyle{Color: ink, Align: picture.Right | middle})
+	s.Text(typeset.Layout(signed(e.Set.Energy-zero, 3), textSize*shrink, style), col.energy, row, picture.TextStyle{Color: ink, Align: picture.Right | middle})
 	if e.Set.Size > 1 {
-		s.write(fmt.Sprintf("×%d", e.Set.Size), col.size, row, smallSize, t.Soft, picture.Left|middle)
+		s.write(fmt.Sprintf("×%d", e.Set.Size), col.size, row, smallSize*shrink, t.Soft, picture.Left|middle)
 	}
 	if sn.FermiKnown {
 		if e.Set.Energy <= sn.Fermi+hamiltonian.SetTolerance {
-			s.Circle(col.filled, row, 3, picture.Fill{Color: ink})
+			s.Circle(col.filled, row, 3*shrink, picture.Fill{Color: ink})
 		} else {
-			s.Ring(col.filled, row, 2.8, line)
+			s.Ring(col.filled, row, 2.8*shrink, line)
 		}
 	}
 
@@ -213,25 +219,25 @@ func (s *sheet) ladderRow(sn *session.Snapshot, e *ledger.Entry, index int, at, 
 			continue
 		}
 		x1 := x + part.value*width
-		s.FillRect(picture.Span(x, row-5.5, x1, row+5.5), picture.Fill{Color: fade(t.Orbital[part.l]), Crisp: true})
+		s.FillRect(picture.Span(x, row-5.5*shrink, x1, row+5.5*shrink), picture.Fill{Color: fade(t.Orbital[part.l]), Crisp: true})
 		label := fmt.Sprintf("%.0f %s", 100*part.value, part.label)
-		text := typeset.Plain(label, 9.5, typeset.Style{})
+		text := typeset.Plain(label, 9.5*shrink, typeset.Style{})
 		if text.Width+5 < x1-x {
 			s.Text(text, (x+x1)/2, row, picture.TextStyle{Color: t.OrbitInk[part.l], Align: picture.Center | middle})
 		}
 		x = x1
 		if x < col.barEnd-1 {
-			s.Line(x, row-5.5, x, row+5.5, picture.Stroke{Color: t.Panel, Width: 1, Crisp: true})
+			s.Line(x, row-5.5*shrink, x, row+5.5*shrink, picture.Stroke{Color: t.Panel, Width: 1, Crisp: true})
 		}
 	}
 
 	// Bonding to the left and solid, antibonding to the right and hatched.
-	s.signedBar(col.middle, row, e.NetBond/strongest*col.reach, 4.5, weak)
+	s.signedBar(col.middle, row, e.NetBond/strongest*col.reach, 4.5*shrink, weak)
 	label := number(math.Abs(e.NetBond), 2)
 	if e.NetBond < 0 {
-		s.write(minus+label, col.middle+e.NetBond/strongest*col.reach-4, row, smallSize, t.Soft, picture.Right|middle)
+		s.write(minus+label, col.middle+e.NetBond/strongest*col.reach-4, row, smallSize*shrink, t.Soft, picture.Right|middle)
 	} else {
-		s.write("+"+label, col.middle+e.NetBond/strongest*col.reach+4, row, smallSize, t.Soft, picture.Left|middle)
+		s.write("+"+label, col.middle+e.NetBond/strongest*col.reach+4, row, smallSize*shrink, t.Soft, picture.Left|middle)
 	}
 }
 
