@@ -201,7 +201,7 @@ func (s *Set) commonLimits() []string {
 		out = append(out, "Interactions reach first neighbours only.")
 	}
 	out = append(out,
-		"Bond terms follow d^−"+strings.Join(s.etas(), " or d^−")+" when the lattice constant is moved; beyond ±5 % that is extrapolation.",
+		"Bond terms follow "+strings.Join(powers(s.etas()), " or ")+" when the lattice constant is moved; beyond ±5 % that is extrapolation.",
 		"Energies of different crystals or sets have no common zero.",
 		"Temperature changes the occupation only, not the levels.")
 	return out
@@ -219,5 +219,18 @@ func (s *Set) etas() []string {
 		}
 	}
 	sort.Strings(out)
+	return out
+}
+
+// powers writes d to minus each exponent: "d⁻²", "d^−2.5".
+func powers(etas []string) []string {
+	out := make([]string, len(etas))
+	for i, eta := range etas {
+		if len(eta) == 1 && eta[0] >= '0' && eta[0] <= '9' {
+			out[i] = "d⁻" + string([]rune("⁰¹²³⁴⁵⁶⁷⁸⁹")[eta[0]-'0'])
+		} else {
+			out[i] = "d^−" + eta
+		}
+	}
 	return out
 }

@@ -66,10 +66,10 @@ type ladderColumns struct {
 }
 
 func columnsFor(w float64) ladderColumns {
-	c := ladderColumns{tick: 26, energy: 78, size: 84, filled: 112, bar: 124}
+	c := ladderColumns{tick: 26, energy: 74, size: 79, filled: 104, bar: 114}
 	c.reach = min(54, max(22, w*0.13))
 	c.middle = w - edgePad - 30 - c.reach
-	c.barEnd = c.middle - c.reach - 44
+	c.barEnd = c.middle - c.reach - 42
 	if c.barEnd < c.bar+30 {
 		c.barEnd = c.bar + 30
 	}

@@ -71,7 +71,7 @@ func (d *desk) Layout(_ []fyne.CanvasObject, size fyne.Size) {
 	if !narrow {
 		zone := width * d.zoneShare
 		rest := width - zone - 3*gap
-		bands, dos := rest*0.49, rest*0.16
+		bands, dos := rest*0.46, rest*0.145
 		ladder := rest - bands - dos
 		x := float32(gap)
 		place(d.zone, x, top, zone, upper)
