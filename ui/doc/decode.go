@@ -298,7 +298,7 @@ func decodeMesh(t table) [3]int {
 }
 
 func decodeView(t table) View {
-	v := View{Frame: lattice.TwoPiOverA}
+	v := View{Frame: lattice.TwoPiOverA, Level: NotGiven}
 	if t.m == nil {
 		return v
 	}
@@ -308,7 +308,7 @@ func decodeView(t table) View {
 		t.fail("window", "write [lowest, highest] in eV", "view.window is empty")
 	}
 	t.numbers("held", v.Held[:])
-	v.Level = t.whole("level", 0, maxLevel, 0)
+	v.Level = t.whole("level", 0, maxLevel, NotGiven)
 	t.numbers("camera", v.Camera[:])
 	if c := v.Camera; c != [5]float64{} && (c[4] <= 0 || c[0]*c[0]+c[1]*c[1]+c[2]*c[2]+c[3]*c[3] == 0) {
 		t.fail("camera", "remove it to see the zone from the usual side", "view.camera is no turn and zoom")

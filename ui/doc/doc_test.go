@@ -61,7 +61,7 @@ func anyDocument(t *rapid.T) Document {
 	}
 	d.View = View{
 		Colour: rapid.SampledFrom(append([]string{""}, Colours...)).Draw(t, "colour"), Zero: rapid.SampledFrom(append([]string{""}, Zeros...)).Draw(t, "zero"),
-		DOS: rapid.SampledFrom(append([]string{""}, Densities...)).Draw(t, "dos"), Level: rapid.IntRange(0, 30).Draw(t, "level"),
+		DOS: rapid.SampledFrom(append([]string{""}, Densities...)).Draw(t, "dos"), Level: rapid.IntRange(NotGiven, 30).Draw(t, "level"),
 		Frame: lattice.Frame(rapid.IntRange(0, 3).Draw(t, "view frame")),
 	}
 	for i := range d.View.Held {

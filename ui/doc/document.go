@@ -61,11 +61,15 @@ type View struct {
 	Zero   string        // one of Zeros; "" stands for the first
 	Window [2]float64    // energies shown, in the model's zero; {0, 0}: automatic
 	Held   lattice.FracK // held k point
-	Level  int           // focused level there
+	Level  int           // focused level there, or NotGiven
 	Frame  lattice.Frame // in which coordinates are shown
 	DOS    string        // one of Densities; "" stands for the first
 	Camera [5]float64    // of the Zone: quaternion w x y z and zoom; all 0: the usual side
 }
+
+// NotGiven, as the level of a View, leaves the choice to whoever shows it: the
+// valence top.
+const NotGiven = -1
 
 // The choices of a View.
 var (
@@ -107,7 +111,7 @@ func ForSet(id string) (Document, error) {
 		Crystal: Crystal{Prototype: set.Prototype, Elements: set.Elements, A: set.A},
 		Model:   Model{Kind: TwoCentre, Set: id},
 		Mesh:    DefaultMesh,
-		View:    View{Frame: lattice.TwoPiOverA},
+		View:    View{Frame: lattice.TwoPiOverA, Level: NotGiven},
 	}, nil
 }
 

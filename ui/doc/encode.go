@@ -105,7 +105,9 @@ func (w *writer) view(v View) {
 		w.line("window = %s", figures(v.Window[:]))
 	}
 	w.line("held = %s", figures(v.Held[:]))
-	w.line("level = %d", v.Level)
+	if v.Level >= 0 {
+		w.line("level = %d", v.Level)
+	}
 	w.line("frame = %s", quoted(v.Frame.String()))
 	if v.Camera != [5]float64{} {
 		w.line("camera = %s", figures(v.Camera[:]))

@@ -130,7 +130,7 @@ func (s *Session) start(d doc.Document, file, dir string) {
 	s.dragging, s.moving = "", false
 	s.fileRead++
 	s.wish = nil
-	if d.View.Level == 0 && d.View.Held == (lattice.FracK{}) {
+	if d.View.Level == doc.NotGiven {
 		s.wish = &wish{kind: valenceTop}
 	}
 	s.changed()
