@@ -100,8 +100,9 @@ func curvesOf(b *bands.Bands) []trace {
 	return list
 }
 
-// thick is the width, in points, of a band that is wholly of one character.
-const thick = 9.0
+// thickness is the width, in points, of a band that is wholly of one
+// character: less in a low panel, where bands lie close.
+func thickness(plot chart.Plot) float64 { return max(4.5, min(9, plot.Rect.H()/42)) }
 
 // Bands draws the levels along the path.
 func Bands(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
@@ -163,6 +164,8 @@ func (s *sheet) bandCurves(sn *session.Snapshot, v *View, plot chart.Plot) {
 	t, b := s.t, sn.Bands
 	colour := sn.Doc.View.Colour
 	list := curvesOf(b)
+	thick := thickness(plot)
+	scale := thick / strongestBond(b)
 	s.Begin("bands")
 	for _, c := range list {
 		if c.highest < plot.Y.Lo || c.lowest > plot.Y.Hi {
@@ -181,12 +184,12 @@ func (s *sheet) bandCurves(sn *session.Snapshot, v *View, plot chart.Plot) {
 			values := make([]float64, len(c.index))
 			for i, at := range c.index {
 				// Antibonding rises above the curve, bonding hangs below.
-				values[i] = b.NetBond[at] * bondingScale(b)
+				values[i] = b.NetBond[at] * scale
 			}
 			hatch := picture.Hatch{Color: fade(t.Against), Angle: 45, Spacing: 3.4, Width: 1}
 			plot.TwoSided(s.Picture, c.xs, c.ys, values, picture.Fill{Color: alpha(fade(t.Against), 46), Hatch: hatch}, picture.Fill{Color: fade(t.Bonding)}, 0)
 		default:
-			plot.Ribbons(s.Picture, c.xs, c.ys, s.strips(sn, c, colour, fade), 0)
+			plot.Ribbons(s.Picture, c.xs, c.ys, s.strips(sn, c, colour, thick, fade), 0)
 		}
 	}
 	for _, c := range list {
@@ -207,7 +210,7 @@ func (s *sheet) bandCurves(sn *session.Snapshot, v *View, plot chart.Plot) {
 
 // strips are the fat parts of a band: all shells side by side, one shell, or
 // the atoms.
-func (s *sheet) strips(sn *session.Snapshot, c trace, colour string, fade func(picture.Color) picture.Color) []chart.Band {
+func (s *sheet) strips(sn *session.Snapshot, c trace, colour string, thick float64, fade func(picture.Color) picture.Color) []chart.Band {
 	t, b := s.t, sn.Bands
 	groups := len(b.Groups)
 	gather := func(fits func(hamiltonian.Group) bool) []float64 {
@@ -265,14 +268,14 @@ func shellsOf(b *bands.Bands) []hamiltonian.AngularMomentum {
 	return list
 }
 
-// bondingScale is points per eV of net bond energy: the strongest is as wide
-// as a pure band.
-func bondingScale(b *bands.Bands) float64 {
+// strongestBond is the largest net bond energy of any level, eV: as a strip it
+// is as wide as a pure band.
+func strongestBond(b *bands.Bands) float64 {
 	strongest := 1e-3
 	for _, e := range b.NetBond {
 		strongest = max(strongest, math.Abs(e))
 	}
-	return thick / strongest
+	return strongest
 }
 
 // bandLegend says what the widths mean, in the strip above the plot, and
