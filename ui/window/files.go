@@ -114,7 +114,10 @@ func (w *Window) saveAs(file string, then func()) {
 	}
 }
 
-func (w *Window) askOpen() {
+func (w *Window) askOpen() { w.askFile(studyEnding, w.open) }
+
+// askFile asks for a file with an ending, beginning where the last study lies.
+func (w *Window) askFile(ending string, use func(file string)) {
 	d := dialog.NewFileOpen(func(r fyne.URIReadCloser, err error) {
 		if err != nil {
 			w.showProblem("No file was opened", err)
@@ -125,10 +128,13 @@ func (w *Window) askOpen() {
 		}
 		file := r.URI().Path()
 		r.Close()
-		w.open(file)
+		use(file)
 	}, w.win)
-	d.SetFilter(storage.NewExtensionFileFilter([]string{studyEnding}))
-	w.place(d)
+	d.SetFilter(storage.NewExtensionFileFilter([]string{ending}))
+	if l, err := storage.ListerForURI(storage.NewFileURI(w.prefs.folder())); err == nil {
+		d.SetLocation(l)
+	}
+	d.Resize(w.dialogSize(860, 560))
 	d.Show()
 }
 
@@ -168,14 +174,6 @@ func (w *Window) askSave(then func()) {
 		w.saveAs(file, then)
 		return nil
 	})
-}
-
-// place opens a file dialog where the last study lies, in a handy size.
-func (w *Window) place(d *dialog.FileDialog) {
-	if l, err := storage.ListerForURI(storage.NewFileURI(w.prefs.folder())); err == nil {
-		d.SetLocation(l)
-	}
-	d.Resize(w.dialogSize(860, 560))
 }
 
 // ask shows a dialog with one field. What stands against the answer is told in
@@ -301,23 +299,7 @@ func (w *Window) askCrystal() {
 }
 
 // askSet takes a parameter set from a file of the user's own.
-func (w *Window) askSet() {
-	d := dialog.NewFileOpen(func(r fyne.URIReadCloser, err error) {
-		if err != nil {
-			w.showProblem("No file was opened", err)
-			return
-		}
-		if r == nil {
-			return
-		}
-		file := r.URI().Path()
-		r.Close()
-		w.useSetFile(file)
-	}, w.win)
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
-	w.place(d)
-	d.Show()
-}
+func (w *Window) askSet() { w.askFile(".toml", w.useSetFile) }
 
 func (w *Window) useSetFile(file string) {
 	if err := w.session.Do(session.UseSetFile{File: file}); err != nil {
