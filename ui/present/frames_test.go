@@ -2,6 +2,7 @@ package present
 
 import (
 	"context"
+	"fmt"
 	"image"
 	"testing"
 
@@ -19,8 +20,21 @@ import (
 	"bandwright/ui/session"
 )
 
-// computed is a snapshot as a session would publish it, of a shipped set.
+var made = map[string]*session.Snapshot{}
+
+// computed is a snapshot as a session would publish it, of a shipped set. Each
+// caller has one of its own.
 func computed(tb testing.TB, id string, orbit bool) *session.Snapshot {
+	tb.Helper()
+	key := fmt.Sprint(id, orbit)
+	if made[key] == nil {
+		made[key] = compute(tb, id, orbit)
+	}
+	own := *made[key]
+	return &own
+}
+
+func compute(tb testing.TB, id string, orbit bool) *session.Snapshot {
 	tb.Helper()
 	d, err := doc.ForSet(id)
 	if err != nil {
