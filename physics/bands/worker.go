@@ -27,7 +27,7 @@ type worker struct {
 	evaluator hamiltonian.Evaluator
 	solver    *linalg.Solver
 	general   *linalg.GeneralSolver
-	segments  []segment
+	group     []int // of each basis function
 	site      *onSite
 	isBond    []bool
 	terms     []float64
@@ -36,31 +36,21 @@ type worker struct {
 	join      *joiner
 }
 
-// segment is neighbouring basis functions first … last−1 of one group.
-type segment struct{ group, first, last int }
-
-func segmentsOf(groups []hamiltonian.Group, n int) []segment {
+// groupsOf returns the group of each basis function.
+func groupsOf(groups []hamiltonian.Group, n int) []int {
 	of := make([]int, n)
 	for g, group := range groups {
 		for _, i := range group.Members {
 			of[i] = g
 		}
 	}
-	var out []segment
-	for i, g := range of {
-		if i > 0 && g == of[i-1] {
-			out[len(out)-1].last++
-		} else {
-			out = append(out, segment{g, i, i + 1})
-		}
-	}
-	return out
+	return of
 }
 
 func newWorker(m hamiltonian.Model, b *Bands, starts []marks, site *onSite) *worker {
 	w := &worker{
 		b: b, m: m, starts: starts, evaluator: m.NewEvaluator(), site: site,
-		label: make([]int32, b.N), join: newJoiner(b.N), segments: segmentsOf(b.Groups, b.N),
+		label: make([]int32, b.N), join: newJoiner(b.N), group: groupsOf(b.Groups, b.N),
 	}
 	newState := func() *state {
 		s := &state{e: make([]float64, b.N), h: newMatrix(b.N), v: newMatrix(b.N)}
@@ -206,12 +196,8 @@ func (w *worker) weights(i int) {
 			re, im := s.v.Re[n*s.v.Stride:][:b.N], s.v.Im[n*s.v.Stride:][:b.N]
 			wr, wi := s.w.Re[n*s.w.Stride:][:b.N], s.w.Im[n*s.w.Stride:][:b.N]
 			// Mulliken weight Re c*(Sc); |c|² in an orthogonal basis.
-			for _, part := range w.segments {
-				sum := 0.0
-				for a := part.first; a < part.last; a++ {
-					sum += re[a]*wr[a] + im[a]*wi[a]
-				}
-				row[part.group] += sum
+			for a, x := range re {
+				row[w.group[a]] += x*wr[a] + im[a]*wi[a]
 			}
 			energy += s.e[n]
 			if w.site != nil && w.site.level == nil {
