@@ -111,3 +111,36 @@ func TestLinks(t *testing.T) {
 		}
 	}
 }
+
+// TestNamedTests: the tests that DEVELOPERS.md names are there.
+func TestNamedTests(t *testing.T) {
+	root := repository(t)
+	text, err := os.ReadFile(filepath.Join(root, "DEVELOPERS.md"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	files, err := goFiles(root)
+	if err != nil {
+		t.Fatal(err)
+	}
+	tests, err := testFuncs(root, files, "Test", "T")
+	if err != nil {
+		t.Fatal(err)
+	}
+	there := map[testFunc]bool{}
+	for _, f := range tests {
+		there[f] = true
+	}
+	named := 0
+	for _, m := range regexp.MustCompile("`((?:physics|render|ui|cmd)/[a-z]+)` (Test[^|]+)").FindAllStringSubmatch(string(text), -1) {
+		for _, name := range strings.Split(m[2], ",") {
+			named++
+			if !there[testFunc{m[1], strings.TrimSpace(name)}] {
+				t.Errorf("DEVELOPERS.md names %s of %s, which is not there", strings.TrimSpace(name), m[1])
+			}
+		}
+	}
+	if named < 20 {
+		t.Errorf("DEVELOPERS.md names %d tests", named)
+	}
+}
