@@ -101,8 +101,9 @@ const (
 )
 
 // load copies the lower triangle of a into the workspace (both triangles, if
-// the assembly kernels are to work there), checks it, and scales it if its size demands. It returns the factor that undoes the scaling
-// (a power of two), 0 for the zero matrix.
+// the assembly kernels are to work there), checks it, and scales it if its size
+// demands. It returns the factor that undoes the scaling (a power of two), 0 for
+// the zero matrix.
 func (s *Solver) load(a *Matrix) (undo float64, err error) {
 	n, w := s.n, s.work
 	var sumR, sumI, sumD float64
