@@ -356,7 +356,14 @@ func checkCommand(*pflag.FlagSet) func(*call) error {
 			return err
 		}
 		if problems := doc.Check(name, dir, data); len(problems) > 0 {
-			return &doc.Problems{List: problems}
+			// All of them are the output; the message tells the first.
+			if _, err := fmt.Fprintln(c.out, (&doc.Problems{List: problems}).Error()); err != nil {
+				return err
+			}
+			if len(problems) > 1 {
+				return fmt.Errorf("%d problems, the first: %w", len(problems), problems[0])
+			}
+			return problems[0]
 		}
 		_, err = fmt.Fprintf(c.out, "%s: no problem found\n", name)
 		return err

@@ -364,6 +364,26 @@ func TestStandardInput(t *testing.T) {
 	}
 }
 
+// check prints every problem, each with its place and remedy.
+func TestCheckPrintsEveryProblem(t *testing.T) {
+	file := filepath.Join(t.TempDir(), "bad.bandstudy")
+	if err := os.WriteFile(file, []byte("bandstudy = 1\n[crystal]\nprototype = \"diamond\"\nelements = [\"Si\"]\na = nan\nb = 2\n[model]\nset = \"vogl/Si\"\n"), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	var out, errOut bytes.Buffer
+	if status := run(context.Background(), []string{"check", file}, strings.NewReader(""), &out, &errOut); status != inputFault {
+		t.Errorf("status %d", status)
+	}
+	for _, want := range []string{":5:1: ", ":6:1: ", ":8:1: ", "; "} {
+		if !strings.Contains(out.String(), want) {
+			t.Errorf("%q is not in\n%s", want, out.String())
+		}
+	}
+	if !strings.Contains(errOut.String(), "3 problems") || !strings.Contains(errOut.String(), "finite") {
+		t.Errorf("the message is %q", errOut.String())
+	}
+}
+
 // closed is a reader of the output that has gone.
 type closed struct{ after int }
 
