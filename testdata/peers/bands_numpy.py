@@ -2,9 +2,10 @@
 
 The peer of the band benchmark: the same k points, the same model, written
 independently from bond sums and Slater-Koster factors (Slater, Koster 1954),
-vectorised over k in chunks, eigenvectors by LAPACK through numpy.
+eigenvectors by LAPACK through numpy. Twice: plainly, k point by k point as one
+writes it down, and vectorised over k in chunks, as fast as numpy can.
 
-usage: bands_numpy.py KFILE [--check]
+usage: bands_numpy.py plain|vectorised KFILE
 KFILE holds k points as raw float64 triples, Cartesian, 1/angstrom.
 Prints the seconds taken (reading excluded), then for each k of a sample of
 them the energies and sum_n E_n^2 w_n,group, which no choice of vectors within
@@ -62,10 +63,26 @@ def bands(k):
     return energies, weights
 
 
+def bands_plainly(k):
+    energies = np.empty((len(k), 10))
+    weights = np.empty((len(k), 10, len(GROUPS)))
+    for i in range(len(k)):
+        h = ONSITE.copy()
+        for d, block in zip(BONDS, BLOCKS):
+            h[:5, 5:] += np.exp(1j * (k[i] @ d)) * block
+        h[5:, :5] = h[:5, 5:].conj().T
+        energies[i], c = np.linalg.eigh(h)
+        square = np.abs(c) ** 2
+        for g, members in enumerate(GROUPS):
+            weights[i, :, g] = square[members, :].sum(axis=0)
+    return energies, weights
+
+
 def main():
-    k = np.fromfile(sys.argv[1]).reshape(-1, 3)
+    k = np.fromfile(sys.argv[2]).reshape(-1, 3)
+    compute = {"plain": bands_plainly, "vectorised": bands}[sys.argv[1]]
     start = time.perf_counter()
-    energies, weights = bands(k)
+    energies, weights = compute(k)
     print("seconds", time.perf_counter() - start)
     for i in range(0, len(k), max(1, len(k) // 50)):
         moments = (energies[i, :, None] ** 2 * weights[i]).sum(axis=0)
