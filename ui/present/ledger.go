@@ -389,12 +389,14 @@ func contrastName(sn *session.Snapshot, row ledger.ContrastRow) string {
 }
 
 // LedgerText is the Ledger of the focused level, and the Contrast if there is
-// one, as lines of columns separated by tabs.
+// one, as lines of columns separated by tabs. Its numbers have the minus of a
+// keyboard, so that a spreadsheet reads them.
 func LedgerText(sn *session.Snapshot) string {
 	if sn.Focus == nil || sn.Built == nil {
 		return ""
 	}
 	var b strings.Builder
+	typed := func(v float64, decimals int) string { return strings.ReplaceAll(signed(v, decimals), minus, "-") }
 	setID := sn.Doc.Model.Set
 	if sn.Doc.Model.File != "" {
 		setID = sn.Doc.Model.File
@@ -407,16 +409,16 @@ func LedgerText(sn *session.Snapshot) string {
 	fmt.Fprintf(&b, "%s\n", ledgerRemark(sn))
 	for _, row := range sn.Focus.Table() {
 		if row.Quantity.IsTerm() {
-			fmt.Fprintf(&b, "%s\t%s\teV\n", RowName(sn, row.Quantity, row.Subject), signed(row.Value, 6))
+			fmt.Fprintf(&b, "%s\t%s\teV\n", RowName(sn, row.Quantity, row.Subject), typed(row.Value, 6))
 		}
 	}
-	fmt.Fprintf(&b, "sum = E\t%s\teV\n", signed(sn.Focus.Sum, 6))
+	fmt.Fprintf(&b, "sum = E\t%s\teV\n", typed(sn.Focus.Sum, 6))
 	for _, row := range sn.Focus.Table() {
 		switch {
 		case row.Quantity == ledger.WeightOf:
 			fmt.Fprintf(&b, "weight %s\t%s\t\n", row.Subject, number(row.Value, 6))
 		case row.Quantity == ledger.NetBond:
-			fmt.Fprintf(&b, "net bond energy\t%s\teV\n", signed(row.Value, 6))
+			fmt.Fprintf(&b, "net bond energy\t%s\teV\n", typed(row.Value, 6))
 		case row.Quantity == ledger.BondingShare && row.Undefined:
 			b.WriteString("bonding share\tnot defined: no bonds\t\n")
 		case row.Quantity == ledger.BondingShare:
@@ -430,9 +432,9 @@ func LedgerText(sn *session.Snapshot) string {
 				if !in {
 					return "–"
 				}
-				return signed(v, 6)
+				return typed(v, 6)
 			}
-			fmt.Fprintf(&b, "%s\t%s\t%s\t%s\n", contrastName(sn, row), side(row.A, row.InA), side(row.B, row.InB), signed(row.Difference, 6))
+			fmt.Fprintf(&b, "%s\t%s\t%s\t%s\n", contrastName(sn, row), side(row.A, row.InA), side(row.B, row.InB), typed(row.Difference, 6))
 		}
 	}
 	return b.String()
