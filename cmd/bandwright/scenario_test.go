@@ -138,6 +138,18 @@ func TestWindowScenario(t *testing.T) {
 		t.Errorf("the study opened again differs:\n%+v\nsaved:\n%+v", s, saved)
 	}
 	again.shot("5-again")
+
+	// An example study, and back to the file from the list of recent ones.
+	again.key("ctrl+e")
+	time.Sleep(400 * time.Millisecond)
+	again.write("infrared")
+	time.Sleep(200 * time.Millisecond)
+	again.key("Return")
+	again.wait("an example study", patience, func(s state) bool { return s.Crystal == "InSb" && s.File == "" && !s.Busy })
+	again.key("ctrl+r")
+	time.Sleep(400 * time.Millisecond)
+	again.key("Return")
+	again.wait("the recent study", patience, func(s state) bool { return s.File == file && s.Crystal == "Sn" && !s.Busy })
 	again.close()
 }
 
