@@ -122,6 +122,25 @@ func (d Document) Build(dir string) (*Built, error) {
 	return b, nil
 }
 
+// Stretch says that the set is used for another structure than it was made for,
+// and what to do; both are "" when it is not. Such a model can be computed, but
+// coordination and distances are none that the set was fitted to. A crystal
+// given by its sites has no structure by name and is not judged.
+func (b *Built) Stretch() (problem, remedy string) {
+	made, used := b.Set.Prototype, b.Crystal.Prototype
+	alike := func(p string) string { // one structure, with atoms of one or two kinds
+		if p == "diamond" {
+			return "zincblende"
+		}
+		return p
+	}
+	if made == "" || used == "" || alike(made) == alike(used) {
+		return "", ""
+	}
+	return fmt.Sprintf("the crystal is %s, and parameter set %s was made for %s", used, b.Set.ID, made),
+		fmt.Sprintf("write prototype = %q, or choose a set for %s", made, used)
+}
+
 // readFile reads a regular file of bounded size.
 func readFile(name string, most int64) ([]byte, error) {
 	f, err := os.Open(name)

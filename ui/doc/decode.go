@@ -154,22 +154,76 @@ func decodeCrystal(t table) (Crystal, *crystal.Crystal) {
 	case c.Prototype != "" && !(c.A > 0):
 		t.fail("a", "write a length above 0 Å", "crystal.a = %v is no length", c.A)
 	}
+	if c.Prototype != "" {
+		checkElements(t, c)
+	}
 	if len(t.r.list) > problems {
 		return c, nil
 	}
 	built, err := Document{Crystal: c}.MakeCrystal()
 	if err != nil {
-		at := "prototype"
-		if c.Prototype == "" {
-			at = "lattice"
-			if len(c.Sites) > 0 && !t.used["lattice"] {
-				at = "site"
-			}
-		}
-		t.fail(at, "correct the crystal", "%v", err)
+		problem, remedy := parts(err)
+		t.r.fail(join(t.name, crystalKey(c)), remedy, "%s", problem)
 		return c, nil
 	}
 	return c, built
+}
+
+// checkElements compares the elements with the prototype they are for. An
+// unknown prototype is left to whoever makes the crystal.
+func checkElements(t table, c Crystal) {
+	for _, p := range crystal.Prototypes() {
+		if p.Name == strings.ReplaceAll(c.Prototype, " ", "-") && len(c.Elements) != p.Elements {
+			example := []string{`["Si"]`, `["As", "Ga"]`}[min(p.Elements, 2)-1]
+			t.fail("elements", fmt.Sprintf("give %d, as elements = %s", p.Elements, example),
+				"crystal.elements has %d items, and prototype %q takes %d", len(c.Elements), p.Name, p.Elements)
+		}
+	}
+	for i, e := range c.Elements {
+		if !crystal.ValidElement(e) {
+			t.fail("elements", "write symbols of elements, as \"Si\"", "item %d of crystal.elements, %q, is no element", i+1, e)
+		}
+	}
+}
+
+// crystalKey is the key, within [crystal], that keeps the crystal from being
+// made: of sites, the first one with which it cannot be.
+func crystalKey(c Crystal) string {
+	if c.Prototype != "" {
+		if _, err := crystal.FromPrototype(c.Prototype, c.Elements, 5); err != nil {
+			return "prototype"
+		}
+		return "a"
+	}
+	fails := func(sites int) bool {
+		part := c
+		part.Sites = c.Sites[:sites]
+		_, err := Document{Crystal: part}.MakeCrystal()
+		return err != nil
+	}
+	if len(c.Sites) == 0 || fails(1) {
+		return "lattice"
+	}
+	// A part that fails fails with more sites too.
+	n := 1 + sort.Search(len(c.Sites)-1, func(i int) bool { return fails(i + 2) })
+	key := "at"
+	for _, before := range c.Sites[:n] {
+		if before.Label != "" && before.Label == c.Sites[n].Label {
+			key = "label"
+		}
+	}
+	return fmt.Sprintf("site[%d].%s", n, key)
+}
+
+// parts splits a message of the physics packages into problem and remedy.
+func parts(err error) (problem, remedy string) {
+	text := err.Error()
+	for _, mark := range []string{"; ", ": "} {
+		if i := strings.LastIndex(text, mark); i > 0 {
+			return text[:i], text[i+len(mark):]
+		}
+	}
+	return text, "correct it"
 }
 
 func decodeModel(t table, c *crystal.Crystal) Model {
@@ -210,23 +264,50 @@ func decodeModel(t table, c *crystal.Crystal) Model {
 	}
 	set, err := catalog.Lookup(m.Set)
 	if err != nil {
-		t.fail("set", "choose one of the shipped sets", "%v", err)
+		problem, remedy := parts(err)
+		t.fail("set", remedy, "%s", problem)
 		return m
 	}
 	if c == nil {
 		return m
 	}
-	if _, err := tightbinding.New(c, set, tightbinding.Options{SpinOrbit: m.SpinOrbit, Factors: m.Factors}); err != nil {
-		at := "set"
-		if _, plain := tightbinding.New(c, set, tightbinding.Options{}); plain == nil {
-			at = "spin_orbit"
-			if _, still := tightbinding.New(c, set, tightbinding.Options{SpinOrbit: m.SpinOrbit}); still == nil {
-				at = "factors"
-			}
-		}
-		t.fail(at, "let set and crystal fit each other", "%v", err)
-	}
+	misfit(t.r, t.name, c, set, m)
 	return m
+}
+
+// misfit notes why a set cannot describe a crystal, if it cannot.
+func misfit(r *reader, name string, c *crystal.Crystal, set *catalog.Set, m Model) {
+	fits := func(s *catalog.Set, o tightbinding.Options) bool {
+		_, err := tightbinding.New(c, s, o)
+		return err == nil
+	}
+	_, err := tightbinding.New(c, set, tightbinding.Options{SpinOrbit: m.SpinOrbit, Factors: m.Factors})
+	if err == nil {
+		return
+	}
+	problem, remedy := parts(err)
+	switch {
+	case fits(set, tightbinding.Options{SpinOrbit: m.SpinOrbit}):
+		r.fail(join(name, "factors"), "name a term of the model: "+remedy, "%s", problem)
+		return
+	case fits(set, tightbinding.Options{}):
+		r.fail(join(name, "spin_orbit"), remedy, "%s", problem)
+		return
+	}
+	var others []string
+	for _, s := range catalog.Shipped() {
+		if fits(s, tightbinding.Options{}) {
+			others = append(others, s.ID)
+		}
+	}
+	if len(others) > 0 {
+		remedy += ": " + strings.Join(others, ", ")
+	}
+	key := "set"
+	if m.File != "" {
+		key = "file"
+	}
+	r.fail(join(name, key), remedy, "%s", problem)
 }
 
 func decodePath(t table, c *crystal.Crystal) Path {

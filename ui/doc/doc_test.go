@@ -175,8 +175,8 @@ func TestBadStudies(t *testing.T) {
 		{"negative a", change("5.431", "-5.431"), 6, "above 0"},
 		{"no a", change("a         = 5.431\n", ""), 3, "crystal.a is missing"},
 		{"unknown prototype", change("\"diamond\"", "\"diamant\""), 4, "diamant"},
-		{"wrong number of elements", change("[\"Si\"]", "[\"Si\", \"Ge\"]"), 4, "element"},
-		{"unknown element", change("[\"Si\"]", "[\"Sl\"]"), 4, "Sl"},
+		{"wrong number of elements", change("[\"Si\"]", "[\"Si\", \"Ge\"]"), 5, "takes 1"},
+		{"unknown element", change("[\"Si\"]", "[\"Sl\"]"), 5, "Sl"},
 		{"no crystal", "bandstudy = 1\n[model]\nset = \"vogl1983/Si\"\n", 0, "no crystal"},
 		{"no model", "bandstudy = 1\n[crystal]\nprototype = \"diamond\"\nelements = [\"Si\"]\na = 5.4\n", 0, "no model"},
 		{"unknown set", change("vogl1983/Si", "vogl1984/Si"), 9, "vogl1983/Si"},
@@ -204,7 +204,14 @@ func TestBadStudies(t *testing.T) {
 		{"pin C", good + "[pin.C]\nheld = [0, 0, 0]\n", 15, "unknown key"},
 		{"singular cell", free("[[1, 0, 0], [0, 1, 0], [1, 1, 0]]", site("[0, 0, 0]")), 3, "plane"},
 		{"two vectors", free("[[1, 0, 0], [0, 1, 0]]", site("[0, 0, 0]")), 3, "three vectors"},
-		{"atoms on top of each other", free("[[0, 2.7, 2.7], [2.7, 0, 2.7], [2.7, 2.7, 0]]", site("[0, 0, 0]")+site("[1, 0, 0]")), 3, "Si"},
+		{"atoms on top of each other", free("[[0, 2.7, 2.7], [2.7, 0, 2.7], [2.7, 2.7, 0]]", site("[0, 0, 0]")+site("[0.25, 0.25, 0.25]")+site("[1, 0, 0]")), 12, "Si1 and Si3"},
+		{"site without a neighbour cell", free("[[0.1, 0, 0], [0, 5, 0], [0, 0, 5]]", site("[0, 0, 0]")), 3, "10 Å"},
+		{"label twice", free("[[0, 2.7, 2.7], [2.7, 0, 2.7], [2.7, 2.7, 0]]", strings.ReplaceAll(site("[0, 0, 0]")+site("[0.25, 0.25, 0.25]"), "at =", "label = \"A\"\nat =")), 10, "own label"},
+		{"a of another unit", change("5.431", "0.5431"), 6, "lengths in Å"},
+		{"a beyond all bounds", change("5.431", "1e300"), 6, "length"},
+		{"bracket left open", change("[crystal]", "[crystal"), 3, "table name"},
+		{"text left open", change("\"Silicon\"", "\"Silicon"), 2, "newlines"},
+		{"no value", change("5.431", ""), 6, "expected value"},
 		{"site without a position", free("[[0, 2.7, 2.7], [2.7, 0, 2.7], [2.7, 2.7, 0]]", "[[crystal.site]]\nelement = \"Si\"\n"), 4, "position"},
 		{"site of no element", free("[[0, 2.7, 2.7], [2.7, 0, 2.7], [2.7, 2.7, 0]]", "[[crystal.site]]\nelement = \"Xx\"\nat = [0, 0, 0]\n"), 5, "no element"},
 		{"prototype and lattice", change("a         = 5.431", "a = 5.431\nlattice = [[1, 0, 0], [0, 1, 0], [0, 0, 1]]"), 4, "keep one"},
@@ -373,8 +380,63 @@ func TestOwnSetFiles(t *testing.T) {
 		t.Errorf("check of a good study: %v", p)
 	}
 	bad := strings.Replace(good, "set        = \"vogl1983/Si\"", "file = \"gone.toml\"", 1)
-	if p := Check("x.bandstudy", dir, []byte(bad)); len(p) != 1 || p[0].Line != 7 {
+	if p := Check("x.bandstudy", dir, []byte(bad)); len(p) != 1 || p[0].Line != 9 {
 		t.Errorf("check of a study with a missing set: %v", p)
+	}
+}
+
+// Check sees what Decode lets pass, as it may be computed or needs other files.
+func TestCheckSeesMore(t *testing.T) {
+	for _, c := range []struct {
+		name, old, new string
+		line           int // 0: no problem
+		says           string
+	}{
+		{"silicon as it is", "Silicon", "Silicon", 0, ""},
+		{"silicon as zincblende", "diamond\"\nelements  = [\"Si\"]", "zincblende\"\nelements  = [\"Si\", \"Si\"]", 0, ""},
+		{"silicon as fcc", "diamond", "fcc", 4, "was made for diamond"},
+		{"mesh of any size", "[24, 24, 24]", "[512, 512, 512]", 0, ""},
+		{"pin beyond the levels", "[mesh]", "[pin.A]\nheld = [0, 0, 0]\nlevel = 10\n[pin.A.crystal]\nprototype = \"diamond\"\nelements = [\"C\"]\na = 3.567\n" +
+			"[pin.A.model]\nset = \"vogl1983/C\"\n[mesh]", 15, "from 0 to 9"},
+		{"pin with a missing file", "[mesh]", "[pin.B]\nheld = [0, 0, 0]\n[pin.B.crystal]\nprototype = \"diamond\"\nelements = [\"C\"]\na = 3.567\n" +
+			"[pin.B.model]\nfile = \"gone.toml\"\n[mesh]", 20, "gone.toml"},
+	} {
+		if !strings.Contains(good, c.old) {
+			t.Fatalf("the good study holds no %q", c.old)
+		}
+		text := []byte(strings.Replace(good, c.old, c.new, 1))
+		if _, err := Decode("x", text); err != nil {
+			t.Errorf("%s: %v", c.name, err)
+		}
+		list := Check("x.bandstudy", t.TempDir(), text)
+		switch {
+		case c.line == 0 && len(list) > 0:
+			t.Errorf("%s: %v", c.name, list[0])
+		case c.line > 0 && (len(list) != 1 || list[0].Line != c.line || !strings.Contains(list[0].Error(), c.says) || list[0].Remedy == ""):
+			t.Errorf("%s: %v, want line %d and %q", c.name, list, c.line, c.says)
+		}
+	}
+}
+
+// An own set is judged by what it says of the crystal, at the line that names
+// it; what is wrong in the set itself, at the set's line.
+func TestCheckOfOwnSets(t *testing.T) {
+	dir := t.TempDir()
+	set, err := os.ReadFile("../../assets/sets/vogl1983/C.toml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	study := []byte(strings.Replace(good, "set        = \"vogl1983/Si\"", "file = \"own.toml\"", 1))
+	for text, want := range map[string]string{
+		string(set): "x.bandstudy:9:1: ", "bandset = 1\nid = 3\n": "own.toml:2:",
+	} {
+		if err := os.WriteFile(filepath.Join(dir, "own.toml"), []byte(text), 0o666); err != nil {
+			t.Fatal(err)
+		}
+		list := Check("x.bandstudy", dir, study)
+		if len(list) != 1 || !strings.HasPrefix(list[0].Error(), want) || list[0].Remedy == "" {
+			t.Errorf("%v does not begin with %q", list, want)
+		}
 	}
 }
 

@@ -102,11 +102,7 @@ func Check(name, dir string, data []byte) []*Problem {
 	if errors.As(r.err(), &problems) {
 		return problems.List
 	}
-	if b, err := d.Build(dir); err != nil {
-		r.fail("model", "correct the model", "%v", err)
-	} else if b.PathErr != nil {
-		r.fail("path", "give the path by its points", "%v", b.PathErr)
-	}
+	checkBuild(r, "", d, dir)
 	for _, p := range []struct {
 		name string
 		pin  *Pin
@@ -114,10 +110,11 @@ func Check(name, dir string, data []byte) []*Problem {
 		if p.pin == nil {
 			continue
 		}
-		pinned := Document{Crystal: p.pin.Crystal, Model: p.pin.Model}
-		if b, err := pinned.Build(dir); err != nil {
-			r.fail(p.name, "correct or remove the pin", "%v", err)
-		} else if n := len(b.Model.Basis()); p.pin.Level >= n {
+		b := checkBuild(r, p.name, Document{Crystal: p.pin.Crystal, Model: p.pin.Model}, dir)
+		if b == nil {
+			continue
+		}
+		if n := len(b.Model.Basis()); p.pin.Level >= n {
 			r.fail(p.name+".level", fmt.Sprintf("write a level from 0 to %d", n-1), "there is no level %d", p.pin.Level)
 		}
 	}
@@ -125,4 +122,44 @@ func Check(name, dir string, data []byte) []*Problem {
 		return problems.List
 	}
 	return nil
+}
+
+// checkBuild builds a study, or a pin of the given name, and notes what keeps
+// it from being built, which Decode cannot see: it reads no other files.
+func checkBuild(r *reader, name string, d Document, dir string) *Built {
+	model := join(name, "model")
+	set, err := d.Model.MakeSet(dir)
+	var inSet *Problem
+	switch {
+	case errors.As(err, &inSet):
+		r.list = append(r.list, inSet)
+		return nil
+	case err != nil:
+		r.fail(join(model, "file"), "correct the name, or put the set beside the study", "%v", err)
+		return nil
+	}
+	c, err := d.MakeCrystal()
+	if err != nil {
+		problem, remedy := parts(err)
+		r.fail(join(name, "crystal"), remedy, "%s", problem)
+		return nil
+	}
+	before := len(r.list)
+	if misfit(r, model, c, set, d.Model); len(r.list) > before {
+		return nil
+	}
+	d.Mesh = [3]int{1, 1, 1} // the finest ones take long, and nothing here needs them
+	b, err := d.Build(dir)
+	if err != nil {
+		problem, remedy := parts(err)
+		r.fail(join(name, "crystal"), remedy, "%s", problem)
+		return nil
+	}
+	if problem, remedy := b.Stretch(); problem != "" {
+		r.fail(join(name, "crystal.prototype"), remedy, "%s", problem)
+	}
+	if b.PathErr != nil && name == "" {
+		r.fail("path", "give the path by its points", "%v", b.PathErr)
+	}
+	return b
 }

@@ -7,6 +7,7 @@ import (
 	"sort"
 	"strconv"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/BurntSushi/toml"
 )
@@ -41,7 +42,7 @@ func open(file string, data []byte) (*reader, table) {
 		p := &Problem{File: file, Problem: strings.TrimPrefix(err.Error(), "toml: "), Remedy: "write TOML: key = value, texts in quotes, each key once"}
 		var pe toml.ParseError
 		if errors.As(err, &pe) {
-			p.Line, p.Column = pe.Position.Line, pe.Position.Col
+			p.Line, p.Column = syntaxPlace(text, pe)
 			if pe.Message != "" {
 				p.Problem = pe.Message
 			}
@@ -51,6 +52,22 @@ func open(file string, data []byte) (*reader, table) {
 	}
 	r.at = positions(text)
 	return r, table{r: r, m: m, used: map[string]bool{}}
+}
+
+// syntaxPlace is where the text stops being TOML. The decoder counts a line
+// break within the name of a table to the line behind it, and may count columns
+// on beyond the end of a line.
+func syntaxPlace(text string, pe toml.ParseError) (line, column int) {
+	lines := strings.Split(text, "\n")
+	line = min(max(pe.Position.Line, 1), len(lines))
+	if line > 1 && strings.Contains(pe.Message, "table") && strings.Contains(pe.Message, `got '\n'`) {
+		line--
+		return line, utf8.RuneCountInString(strings.TrimRight(lines[line-1], "\r")) + 1
+	}
+	if strings.Contains(pe.Message, "already been defined") {
+		return line, 1 // the decoder stands behind the second one
+	}
+	return line, min(max(pe.Position.Col, 1), utf8.RuneCountInString(lines[line-1])+1)
 }
 
 // fail notes a problem at a key, or at the nearest table around it that has a
