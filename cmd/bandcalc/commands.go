@@ -27,7 +27,8 @@ func commands() []command {
 	return []command{
 		{"levels", "STUDY --at \"0.1 0.2 0.3; L\"", "the levels at k points, as CSV",
 			`Prints point,k1,k2,k3,level,energy_eV: points and levels are counted from 1,
-levels ascend, and k stands in the frame of --frame.
+levels ascend, and k stands in the frame of --frame. With spin–orbit coupling
+every state counts once, without it every level holds two electrons.
 
   bandcalc levels si.bandstudy --at "Γ; X; L"
   bandcalc levels si.bandstudy --at "0.85 0 0" --frame 2pi/a`, levelsCommand},
@@ -49,7 +50,8 @@ onsite, spin_orbit and bond sum to energy_eV. All are means over the set.
 			`Prints leg,distance,k1,k2,k3,level,energy_eV and one column of weight for each
 shell of each atom ("Si1 p"). Legs are counted from 1 and each has both its
 ends, so that the point where two legs meet is printed for both. distance is
-along the whole path in Å⁻¹; breaks have no length.
+along the whole path in Å⁻¹; breaks have no length. A study without [path]
+gets the standard path of its lattice.
 
   bandcalc bands si.bandstudy > bands.csv
   bandcalc bands si.bandstudy --step 0.01 --frame 2pi/a`, bandsCommand},
@@ -69,9 +71,12 @@ energy of direct is the smallest vertical gap.
   bandcalc edges si.bandstudy`, edgesCommand},
 		{"check", "FILE", "every problem of a study or a parameter set",
 			`Prints each problem with line, column and remedy, and exits with status 1 if
-there is any.
+there is any. It also reads the parameter sets that the study names, and says
+when one is used for another structure than it was made for, which the other
+commands only note.
 
-  bandcalc check si.bandstudy`, checkCommand},
+  bandcalc check si.bandstudy
+  bandcalc check own-set.toml`, checkCommand},
 		{"sets", "", "the parameter sets that come with the program",
 			`Prints each set with its source, what it was fitted to, how its values were
 obtained, and its limits.
@@ -143,7 +148,7 @@ func levelsCommand(f *pflag.FlagSet) func(*call) error {
 
 // studyAt reads the study and the k points.
 func (c *call) studyAt(at, frame string) (*study, []lattice.FracK, lattice.Frame, error) {
-	s, err := c.study()
+	s, err := c.study(false)
 	if err != nil {
 		return nil, nil, 0, err
 	}
@@ -181,6 +186,10 @@ func ledgerCommand(f *pflag.FlagSet) func(*call) error {
 	}
 }
 
+// mostSamples bounds the points of a path: with a row for each level, files
+// beyond are larger than anything reads.
+const mostSamples = 500_000
+
 // defaultStep is the spacing of the samples of a path, Å⁻¹.
 const defaultStep = 0.02
 
@@ -195,7 +204,7 @@ func bandsCommand(f *pflag.FlagSet) func(*call) error {
 		if f.Changed("step") && !(*step > 0 && *step < math.Inf(1)) {
 			return &usageError{fmt.Sprintf("--step %g: give a length above 0 Å⁻¹", *step)}
 		}
-		s, err := c.study()
+		s, err := c.study(false)
 		if err != nil {
 			return err
 		}
@@ -209,7 +218,15 @@ func bandsCommand(f *pflag.FlagSet) func(*call) error {
 		if f.Changed("step") {
 			d = *step
 		}
+		for _, leg := range s.Path.Legs() {
+			if far(leg.From.K) || far(leg.To.K) {
+				return fmt.Errorf("the leg %s–%s: so far out rounding hides the phases; give points near the first zone", leg.From.Label, leg.To.Label)
+			}
+		}
 		sampling := s.Path.Sample(s.Crystal.Lattice(), d)
+		if n := sampling.X[len(sampling.X)-1] / d; n > mostSamples {
+			return fmt.Errorf("a step of %g Å⁻¹ makes %.3g points of the path, and at most %d are computed; give a larger step", d, n, mostSamples)
+		}
 		b, err := bands.Compute(c.ctx, s.Model, sampling, bands.Options{Weights: true})
 		if err != nil {
 			return err
@@ -248,7 +265,7 @@ func dosCommand(f *pflag.FlagSet) func(*call) error {
 		if !(*step > 0) || !finite(*step) || !finite(*from) || !finite(*to) {
 			return &usageError{"--from, --to and --step: give finite energies and a step above 0"}
 		}
-		s, err := c.study()
+		s, err := c.study(true)
 		if err != nil {
 			return err
 		}
@@ -324,7 +341,7 @@ func (s *study) edge(e *edges.Edge) *edgeJSON {
 
 func edgesCommand(*pflag.FlagSet) func(*call) error {
 	return func(c *call) error {
-		s, err := c.study()
+		s, err := c.study(true)
 		if err != nil {
 			return err
 		}

@@ -15,7 +15,7 @@ import (
 
 func main() {
 	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
-	defer stop()
+	context.AfterFunc(ctx, stop) // the second Ctrl-C ends what the first could not
 	os.Exit(run(ctx, os.Args[1:], os.Stdin, os.Stdout, os.Stderr))
 }
 
@@ -44,6 +44,7 @@ type call struct {
 	args []string
 	in   io.Reader
 	out  io.Writer
+	err  io.Writer // for notes
 }
 
 const intro = `bandcalc computes band structures from studies, without a window.
@@ -95,7 +96,7 @@ func (c command) run(ctx context.Context, args []string, in io.Reader, out, errO
 	flags.SortFlags = false
 	do := c.setup(flags)
 	help := func(to io.Writer) {
-		fmt.Fprintf(to, "usage: bandcalc %s %s\n\n%s\n", c.name, c.args, strings.TrimSpace(c.help))
+		fmt.Fprintf(to, "usage: %s\n\n%s\n", strings.TrimSpace("bandcalc "+c.name+" "+c.args), strings.TrimSpace(c.help))
 		if flags.HasFlags() {
 			fmt.Fprintf(to, "\nflags:\n%s", flags.FlagUsages())
 		}
@@ -108,7 +109,7 @@ func (c command) run(ctx context.Context, args []string, in io.Reader, out, errO
 		fmt.Fprintf(errOut, "bandcalc %s: %v; bandcalc %s --help says how to use it\n", c.name, err, c.name)
 		return wrongUsage
 	}
-	err := do(&call{ctx: ctx, args: flags.Args(), in: in, out: out})
+	err := do(&call{ctx: ctx, args: flags.Args(), in: in, out: out, err: errOut})
 	var usage *usageError
 	switch {
 	case err == nil:
@@ -118,6 +119,8 @@ func (c command) run(ctx context.Context, args []string, in io.Reader, out, errO
 		return wrongUsage
 	case errors.Is(err, syscall.EPIPE):
 		return done // the reader has seen enough
+	case errors.Is(err, context.Canceled):
+		err = errors.New("stopped before it was done")
 	}
 	text := strings.TrimRight(err.Error(), "\n")
 	fmt.Fprintf(errOut, "bandcalc %s: %s\n", c.name, strings.ReplaceAll(text, "\n", "\nbandcalc "+c.name+": "))

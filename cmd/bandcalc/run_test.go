@@ -5,6 +5,7 @@ import (
 	"context"
 	"encoding/csv"
 	"encoding/json"
+	"errors"
 	"flag"
 	"fmt"
 	"math"
@@ -14,6 +15,9 @@ import (
 	"strings"
 	"syscall"
 	"testing"
+	"time"
+
+	"github.com/BurntSushi/toml"
 )
 
 var update = flag.Bool("update", false, "write the golden files anew")
@@ -417,7 +421,8 @@ func TestFaults(t *testing.T) {
 		{"levels FILE --lat L", wrongUsage, "--lat"}, {"sets x", wrongUsage, "no arguments"}, {"dos FILE --step 0", wrongUsage, "step"},
 		{"dos FILE --from 1 --to 0", wrongUsage, "--from below --to"}, {"dos FILE --step 1e-9", wrongUsage, "too many"}, {"bands FILE --step -1", wrongUsage, "above 0"},
 		{"levels FILE --at Q", inputFault, "special point"}, {"levels FILE --at 0_0", inputFault, "three numbers"}, {"levels FILE --at 0_nan_0", inputFault, "finite"},
-		{"levels FILE --at L_X", inputFault, "not one point"},
+		{"levels FILE --at L_X", inputFault, "not one point"}, {"levels FILE --at 1e300_0_0", inputFault, "first zone"},
+		{"bands FILE --step 1e-9", inputFault, "larger step"},
 		{"levels gone --at L", inputFault, "check the name"}, {"edges DIR", inputFault, "folder"}, {"edges BAD", inputFault, "bad.bandstudy:5:1"}, {"check BAD", inputFault, "finite"},
 	} {
 		args := strings.Fields(c.args)
@@ -436,6 +441,253 @@ func TestFaults(t *testing.T) {
 		status := run(context.Background(), args, strings.NewReader(""), &out, &errOut)
 		if status != c.status || !strings.Contains(errOut.String(), c.says) {
 			t.Errorf("bandcalc %s: status %d, %q; want %d and %q", c.args, status, errOut.String(), c.status, c.says)
+		}
+	}
+}
+
+// Levels of the fitted metals at points in general position, as computed by
+// the program of the fit; testdata/models/fitted_metals.toml.
+func TestLevelsOfFittedMetals(t *testing.T) {
+	var models map[string]struct {
+		ID     string
+		A      float64
+		K      [][]float64 `toml:"check_k"`
+		E      [][]float64 `toml:"check_E"`
+		Symbol string      `toml:"element"`
+	}
+	if _, err := toml.DecodeFile("../../testdata/models/fitted_metals.toml", &models); err != nil {
+		t.Fatal(err)
+	}
+	if len(models) != 4 {
+		t.Errorf("%d models", len(models))
+	}
+	for _, m := range models {
+		file := studyFile(t, "fcc", strconv.Quote(m.Symbol), m.A, m.ID, false)
+		for i, k := range m.K {
+			_, list := rows(t, calc(t, "levels", file, "--frame", "2pi/a", "--at", strings.Trim(fmt.Sprint(k), "[]")))
+			for n, want := range m.E[i] {
+				if e := number64(t, list[n][5]); math.Abs(e-want) > 1e-6 {
+					t.Errorf("%s at %v: level %d at %.6f eV, want %.6f", m.ID, k, n+1, e, want)
+				}
+			}
+		}
+	}
+}
+
+// What aluminium must show: three of eight places of the sp bands are filled;
+// the band bottom at Γ is pure s, the next levels there lie some 25 eV higher
+// (24–25 eV: common practice), the density at the Fermi level is
+// 0.375 eV⁻¹ atom⁻¹ and the occupied width 11.63 eV (computed independently
+// with the fitted set on 48³; its target are bands after N. W. Ashcroft, Philos.
+// Mag. 8, 2055 (1963)). The Fermi level is that of 48³ too: coarser meshes put
+// it some meV elsewhere.
+func TestAluminium(t *testing.T) {
+	fermi := func(file string) float64 {
+		var e edgesOutput
+		if err := json.Unmarshal([]byte(calc(t, "edges", file)), &e); err != nil {
+			t.Fatal(err)
+		}
+		return e.Fermi
+	}
+	at := func(file string, energy float64) (total, electrons float64) {
+		text := strconv.FormatFloat(energy, 'g', -1, 64)
+		_, list := rows(t, calc(t, "dos", file, "--from", text, "--to", text))
+		if len(list) != 1 {
+			t.Fatalf("%d energies", len(list))
+		}
+		return number64(t, list[0][1]), number64(t, list[0][len(list[0])-1])
+	}
+	meshed := func(set string) string {
+		file := studyFile(t, "fcc", `"Al"`, 4.05, set, false)
+		text, err := os.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := os.WriteFile(file, bytes.Replace(text, []byte("[12, 12, 12]"), []byte("[48, 48, 48]"), 1), 0o666); err != nil {
+			t.Fatal(err)
+		}
+		return file
+	}
+
+	sp := meshed("fitted/Al-sp")
+	if _, n := at(sp, fermi(sp)); math.Abs(n-3) > 1e-4 {
+		t.Errorf("%.5f electrons below the Fermi level", n)
+	}
+	if _, n := at(sp, 1000); math.Abs(n-8) > 1e-9 {
+		t.Errorf("%.5f places in the four bands", n)
+	}
+
+	spd := meshed("fitted/Al")
+	f := fermi(spd)
+	if g, n := at(spd, f); math.Abs(g-0.375) > 0.001 || math.Abs(n-3) > 1e-4 {
+		t.Errorf("density %.4f, %.5f electrons at the Fermi level", g, n)
+	}
+	_, list := rows(t, calc(t, "ledger", spd, "--at", "Γ"))
+	var bottom float64
+	for _, r := range list {
+		if r[1] == "1" {
+			bottom = number64(t, r[4])
+			if r[5] == "weight" && r[6] == "Al1 s" && math.Abs(number64(t, r[7])-1) > 1e-9 {
+				t.Errorf("the weight of s at the bottom is %s", r[7])
+			}
+		}
+	}
+	if width := f - bottom; math.Abs(width-11.63) > 0.01 {
+		t.Errorf("the occupied band is %.3f eV wide", width)
+	}
+	for _, r := range list {
+		if r[1] == "2" {
+			if up := number64(t, r[4]) - bottom; up < 24 || up > 26 {
+				t.Errorf("the next levels at Γ lie %.2f eV above the bottom", up)
+			}
+			return
+		}
+	}
+	t.Error("one set at Γ")
+}
+
+// Γ₂′ − Γ₁₅ falls from carbon to tin, the reason why the gap closes: values
+// from testdata/models/gamma_gaps.toml, computed independently of this project
+// from the sets of Vogl, Hjalmarson, Dow 1983.
+func TestAntibondingLevelFalls(t *testing.T) {
+	var want map[string]float64
+	if _, err := toml.DecodeFile("../../testdata/models/gamma_gaps.toml", &want); err != nil {
+		t.Fatal(err)
+	}
+	for element, gap := range want {
+		_, list := rows(t, calc(t, "ledger", studyFile(t, "diamond", strconv.Quote(element), setConstant(t, "vogl1983/"+element, 0), "vogl1983/"+element, false), "--at", "Γ"))
+		var s, p []float64 // energies of the pure s and p sets, ascending
+		for _, r := range list {
+			if r[5] != "weight" {
+				continue
+			}
+			// How many members of the set are s, or p: both atoms have the same
+			// share. In tin Γ₂′ and Γ₂₅′ are one set of four.
+			members := 2 * number64(t, r[7]) * number64(t, r[3])
+			switch {
+			case r[6] == element+"1 s" && math.Abs(members-1) < 1e-3:
+				s = append(s, number64(t, r[4]))
+			case r[6] == element+"1 p" && math.Abs(members-3) < 1e-3:
+				p = append(p, number64(t, r[4]))
+			}
+		}
+		if len(s) != 2 || len(p) != 2 {
+			t.Errorf("%s: %d s and %d p sets at Γ", element, len(s), len(p))
+			continue
+		}
+		if d := s[1] - p[1]; math.Abs(d-gap) > 0.0051 { // two decimals are given
+			t.Errorf("%s: Γ₂′ − Γ₁₅ = %.4f eV, want %.2f", element, d, gap)
+		}
+	}
+}
+
+// Every kind of bad input: status 1, and on standard error the line, what is
+// wrong, and what to do.
+func TestBadInput(t *testing.T) {
+	const (
+		head    = "bandstudy = 1\n"
+		crystal = "[crystal]\nprototype = \"diamond\"\nelements = [\"Si\"]\na = 5.431\n" // lines 2 to 5
+		model   = "[model]\nset = \"vogl1983/Si\"\n"
+		cell    = "[crystal]\nlattice = [[0, 2.7, 2.7], [2.7, 0, 2.7], [2.7, 2.7, 0]]\n"
+		site    = "[[crystal.site]]\nelement = \"Si\"\nat = "
+	)
+	for _, c := range []struct {
+		name, text string
+		line       int
+		says       string
+	}{
+		{"no TOML", head + "[crystal\na = 3\n", 2, "write TOML"},
+		{"binary", head + "\xff\xfe\n", 2, "write TOML"},
+		{"newer form", strings.Replace(head, "1", "2", 1) + crystal + model, 1, "newer version"},
+		{"unknown key", head + crystal + "colour = 3\n" + model, 6, "unknown key crystal.colour; remove it"},
+		{"wrong type", head + strings.Replace(crystal, "5.431", "\"5.431\"", 1) + model, 5, "write a number"},
+		{"NaN", head + strings.Replace(crystal, "5.431", "nan", 1) + model, 5, "write a finite number"},
+		{"infinity", head + strings.Replace(crystal, "5.431", "+inf", 1) + model, 5, "write a finite number"},
+		{"no length", head + strings.Replace(crystal, "5.431", "-1", 1) + model, 5, "above 0"},
+		{"singular cell", head + "[crystal]\nlattice = [[1, 0, 0], [0, 1, 0], [1, 1, 0]]\n" + site + "[0, 0, 0]\n" + model, 3, "three independent vectors"},
+		{"zero distance", head + cell + site + "[0, 0, 0]\n" + site + "[0, 0, 1]\n" + model, 9, "remove one of them"},
+		{"unknown prototype", head + strings.Replace(crystal, "diamond", "diamant", 1) + model, 3, "use fcc, bcc"},
+		{"unknown element", head + strings.Replace(crystal, "Si", "Sl", 1) + model, 4, "write symbols of elements"},
+		{"number of elements", head + strings.Replace(crystal, "[\"Si\"]", "[\"Si\", \"C\"]", 1) + model, 4, "give 1"},
+		{"unknown set", head + crystal + strings.Replace(model, "vogl", "vogel", 1), 7, "did you mean"},
+		{"set of other elements", head + crystal + strings.Replace(model, "Si", "C", 1), 7, "choose a set for the elements of the crystal: boykin2004/Si"},
+		{"unknown frame", head + crystal + model + "[path]\nframe = \"cubic\"\n", 9, "2pi/a"},
+		{"mesh out of range", head + crystal + model + "[mesh]\ndivisions = [24, 24, 1000]\n", 9, "from 1 to 512"},
+		{"factor out of range", head + crystal + model + "factors = {\"shell1 spσ\" = 2.5}\n", 8, "from 0 to 2"},
+		{"factor of no term", head + crystal + model + "factors = {\"shell2 spσ\" = 0.5}\n", 8, "name a term"},
+		{"path", head + crystal + model + "[path]\nlegs = [\"Γ X\", \"U Q\"]\n", 9, "those are Γ, K, L, U, W, X"},
+		{"kind of later versions", head + crystal + model + "kind = \"extended-hueckel\"\n", 8, "not available"},
+	} {
+		for _, command := range []string{"check", "edges"} {
+			var out, errOut bytes.Buffer
+			status := run(context.Background(), []string{command, "-"}, strings.NewReader(c.text), &out, &errOut)
+			text := errOut.String()
+			if status != inputFault || !strings.Contains(text, fmt.Sprintf("standard input:%d:", c.line)) || !strings.Contains(text, "; ") || !strings.Contains(text, c.says) {
+				t.Errorf("%s, %s: status %d, want line %d and %q:\n%s", command, c.name, status, c.line, c.says, text)
+			}
+		}
+	}
+	// A set of the user's own is told by its own name and line, with a study and alone.
+	dir := t.TempDir()
+	own := filepath.Join(dir, "own.toml")
+	study := filepath.Join(dir, "x.bandstudy")
+	text, err := os.ReadFile("../../assets/sets/vogl1983/Si.toml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	bad := bytes.Replace(text, []byte("s = -4.2000"), []byte("s = nan"), 1)
+	line := 1 + bytes.Count(bad[:bytes.Index(bad, []byte("s = nan"))], []byte("\n"))
+	if err := errors.Join(os.WriteFile(own, bad, 0o666), os.WriteFile(study, []byte(head+crystal+"[model]\nfile = \"own.toml\"\n"), 0o666)); err != nil {
+		t.Fatal(err)
+	}
+	for _, args := range [][]string{{"check", own}, {"check", study}, {"levels", study, "--at", "Γ"}} {
+		var out, errOut bytes.Buffer
+		status := run(context.Background(), args, strings.NewReader(""), &out, &errOut)
+		if status != inputFault || !strings.Contains(errOut.String(), fmt.Sprintf("own.toml:%d:", line)) {
+			t.Errorf("%v: status %d, want line %d: %s", args, status, line, errOut.String())
+		}
+	}
+}
+
+// Silicon's parameters on an fcc lattice can be computed, and say what they are.
+func TestSetOfAnotherStructure(t *testing.T) {
+	file := studyFile(t, "fcc", `"Si"`, 5.431, "vogl1983/Si", false)
+	for command, want := range map[string]int{"edges": done, "check": inputFault} {
+		var out, errOut bytes.Buffer
+		if status := run(context.Background(), []string{command, file}, strings.NewReader(""), &out, &errOut); status != want || !strings.Contains(errOut.String(), "made for diamond") {
+			t.Errorf("%s: status %d, %s", command, status, errOut.String())
+		}
+	}
+}
+
+// The finest mesh costs nothing where no mesh is needed.
+func TestLevelsNeedNoMesh(t *testing.T) {
+	file := silicon(t)
+	want := calc(t, "levels", file, "--at", "L")
+	text, err := os.ReadFile(file)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := os.WriteFile(file, bytes.Replace(text, []byte("[12, 12, 12]"), []byte("[512, 512, 512]"), 1), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	begin := time.Now()
+	if got := calc(t, "levels", file, "--at", "L"); got != want {
+		t.Error("the mesh changes the levels")
+	}
+	calc(t, "check", file)
+	if d := time.Since(begin); d > 5*time.Second { // reducing the mesh takes some 25 s
+		t.Errorf("it took %v", d)
+	}
+}
+
+func TestStopping(t *testing.T) {
+	ctx, stop := context.WithCancel(context.Background())
+	stop()
+	for _, command := range []string{"bands", "dos", "edges"} {
+		var out, errOut bytes.Buffer
+		if status := run(ctx, []string{command, silicon(t)}, strings.NewReader(""), &out, &errOut); status != inputFault || !strings.Contains(errOut.String(), "stopped") || out.Len() > 0 {
+			t.Errorf("%s: status %d, %q, %d bytes", command, status, errOut.String(), out.Len())
 		}
 	}
 }

@@ -45,8 +45,9 @@ func (c *call) input() (name, dir string, data []byte, err error) {
 	return name, filepath.Dir(name), data, err
 }
 
-// study reads and builds the study.
-func (c *call) study() (*study, error) {
+// study reads and builds the study. Without a mesh it has one point, as the
+// finest take long to reduce.
+func (c *call) study(mesh bool) (*study, error) {
 	name, dir, data, err := c.input()
 	if err != nil {
 		return nil, err
@@ -55,9 +56,15 @@ func (c *call) study() (*study, error) {
 	if err != nil {
 		return nil, err
 	}
+	if !mesh {
+		d.Mesh = [3]int{1, 1, 1}
+	}
 	b, err := d.Build(dir)
 	if err != nil {
 		return nil, fmt.Errorf("%s: %w", name, err)
+	}
+	if problem, remedy := b.Stretch(); problem != "" {
+		fmt.Fprintf(c.err, "bandcalc: note: %s: %s; %s\n", name, problem, remedy)
 	}
 	return &study{d, b}, nil
 }
@@ -79,6 +86,9 @@ func (s *study) points(text, frame string) ([]lattice.FracK, error) {
 		if err != nil {
 			return nil, fmt.Errorf("--at, point %d (%s): %w", i+1, one, err)
 		}
+		if far(p.K) {
+			return nil, fmt.Errorf("--at, point %d (%s): so far out rounding hides the phases; give an equivalent point near the first zone", i+1, one)
+		}
 		list = append(list, p.K)
 	}
 	if len(list) == 0 {
@@ -87,14 +97,26 @@ func (s *study) points(text, frame string) ([]lattice.FracK, error) {
 	return list, nil
 }
 
+// farthest bounds the fractions of k points: beyond, the phase 2πk·n has fewer
+// than ten decimals left, and energies could be wrong by 10⁻⁹ eV or more.
+const farthest = 1e6
+
+func far(k lattice.FracK) bool {
+	return math.Abs(k[0]) > farthest || math.Abs(k[1]) > farthest || math.Abs(k[2]) > farthest
+}
+
+// faintest is below the rounding of everything that is printed: energies of
+// some eV, weights, and k points near the zone. Smaller numbers are zeros.
+const faintest = 1e-14
+
 // figure writes a number with 12 significant digits; "" stands for one that
 // does not exist.
 func figure(v float64) string {
 	if math.IsNaN(v) {
 		return ""
 	}
-	if v == 0 {
-		v = 0 // no −0
+	if math.Abs(v) < faintest {
+		v = 0
 	}
 	return strconv.FormatFloat(v, 'g', 12, 64)
 }
