@@ -24,7 +24,7 @@ func Foot(sn *session.Snapshot, v *View, st Status, w, h float64) *picture.Pictu
 	colour, title := t.Soft, "Limits"
 	if sn.BuildErr != nil {
 		limits, colour, title = []string{sn.BuildErr.Error()}, t.Bad, "Not computed"
-	} else if len(limits) > 0 && (strings.HasPrefix(limits[0], "Altered") || strings.HasPrefix(limits[0], "Lattice")) {
+	} else if len(limits) > 0 && (strings.HasPrefix(limits[0], "Altered") || strings.HasPrefix(limits[0], "Stretched") || strings.HasPrefix(limits[0], "Lattice")) {
 		colour = t.Caution
 	}
 	x := 4 + s.bold(title, 4, first, smallSize+1, colour, picture.Middle) + 10

@@ -117,6 +117,9 @@ func Limits(sn *session.Snapshot) []string {
 	if set == nil {
 		return list
 	}
+	if problem, _ := sn.Built.Stretch(); problem != "" {
+		list = append(list, "Stretched set: "+problem+".")
+	}
 	if a := sn.Built.Crystal.Setting.A; set.A > 0 {
 		if off := a/set.A - 1; math.Abs(off) > 0.05+1e-9 {
 			list = append(list, fmt.Sprintf("Lattice constant %s %% from that of the set: the d⁻² law is an extrapolation beyond ±5 %%.", signed(100*off, 1)))
