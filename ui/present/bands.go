@@ -107,7 +107,7 @@ func thickness(plot chart.Plot) float64 { return max(4.5, min(9, plot.Rect.H()/4
 // Bands draws the levels along the path.
 func Bands(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 	t := v.Theme
-	s := newSheet(t, w, h, "Bands", "")
+	s := newSheet(t, w, h, marked(sn, "Bands"), "")
 	plot := BandsPlot(sn, v, w, h)
 	zero, title := Zero(sn)
 	style := axisStyle(t)

@@ -60,7 +60,7 @@ func DOS(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 	if bonding {
 		title, remark = "COHP", "per cell"
 	}
-	s := newSheet(t, w, h, title, remark)
+	s := newSheet(t, w, h, marked(sn, title), remark)
 	plot := DOSPlot(sn, v, w, h)
 	style := axisStyle(t)
 	zero, _ := Zero(sn)

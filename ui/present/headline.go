@@ -130,6 +130,15 @@ func Limits(sn *session.Snapshot) []string {
 	return list
 }
 
+// marked is the title of a panel of results, which says when they are not those
+// of the set as published.
+func marked(sn *session.Snapshot, title string) string {
+	if sn.Built != nil && sn.Built.Model != nil && len(sn.Built.Model.Altered()) > 0 {
+		title += " · altered"
+	}
+	return title
+}
+
 // About says whose numbers the model uses.
 func About(sn *session.Snapshot) string {
 	if sn.Built == nil || sn.Built.Set == nil {

@@ -86,7 +86,7 @@ func Ladder(sn *session.Snapshot, v *View, w, h float64) *picture.Picture {
 	if sn.HeldLabel != "" {
 		title += " at " + sn.HeldLabel
 	}
-	s := newSheet(t, w, h, title, "click focuses a level")
+	s := newSheet(t, w, h, marked(sn, title), "click focuses a level")
 	plot := picture.Span(1, PlotTop, w-1, max(PlotTop+1, h-PlotBottom))
 	if sn.Held == nil || sn.Built == nil {
 		reason := "The levels of the held k point are being computed."

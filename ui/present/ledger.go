@@ -80,7 +80,7 @@ func partsFor(w, h float64, pinned bool) ledgerParts {
 // bound the scrolling.
 func Ledger(sn *session.Snapshot, v *View, w, h float64) (*picture.Picture, float64) {
 	t := v.Theme
-	s := newSheet(t, w, h, "Ledger", ledgerRemark(sn))
+	s := newSheet(t, w, h, marked(sn, "Ledger"), ledgerRemark(sn))
 	if sn.Focus == nil {
 		reason := "Hold a k point and focus a level to see what its energy is made of."
 		if sn.HeldErr != nil {

@@ -341,7 +341,13 @@ func TestChips(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	limits := Limits(&session.Snapshot{Doc: d, Built: b})
+	altered := &session.Snapshot{Doc: d, Built: b}
+	for _, panel := range []string{"bands", "dos", "ladder", "ledger"} {
+		if dump := panels(altered, viewOf(Light()))[panel](600, 400).Dump(); !strings.Contains(dump, "altered") {
+			t.Errorf("%s does not say that the model is altered", panel)
+		}
+	}
+	limits := Limits(altered)
 	if !strings.HasPrefix(limits[0], "Altered") || !strings.Contains(limits[1], "extrapolation") {
 		t.Errorf("the limits begin with %q, %q", limits[0], limits[1])
 	}
